@@ -1,0 +1,94 @@
+using System.Collections.Immutable;
+using TmLab.Measurement;
+using TmLab.Quantities;
+
+namespace TmLab.Matrix;
+
+/// <summary>
+/// Everything known of a reconstructed transmission matrix besides its elements: what each row and column is and how far to
+/// trust it, and the geometry needed to make a mask. Immutable.
+/// </summary>
+/// <param name="Title">The measurement's title; null when it has none.</param>
+/// <param name="WavelengthNm">Vacuum wavelength, nanometres; null when unknown.</param>
+/// <param name="CameraRegion">Size of the camera region; rows are its pixels, row-major.</param>
+/// <param name="Grid">The macro-pixel grid; columns are its macro-pixels, row-major.</param>
+/// <param name="Modulator">The panel; null when unknown.</param>
+/// <param name="PhaseLut">The panel's grey-to-phase table; null when grey is proportional to phase.</param>
+/// <param name="Flatness">The panel's flatness image, 8-bit, native size, row-major; empty when not given.</param>
+/// <param name="Pixels">One entry a row.</param>
+/// <param name="Modes">One entry a column.</param>
+/// <param name="Drift">The phase drift that was found and removed.</param>
+/// <param name="Quality">Figures on how far to trust the whole.</param>
+public sealed record TransmissionMatrixFacts(
+    string? Title,
+    double? WavelengthNm,
+    ImageSize CameraRegion,
+    GridShape Grid,
+    ModulatorDescription? Modulator,
+    GrayPhaseTable? PhaseLut,
+    ImmutableArray<byte> Flatness,
+    PixelFacts Pixels,
+    ModeFacts Modes,
+    DriftFacts Drift,
+    MatrixQuality Quality);
+
+/// <summary>Facts on the rows, arrays of one entry a pixel.</summary>
+/// <param name="Y">Camera row of each pixel.</param>
+/// <param name="X">Camera column of each pixel.</param>
+/// <param name="Valid">Whether the row may be used.</param>
+/// <param name="Visibility">Mean modulation depth 2|D|/a of the fringes, 0 … 1 in a good measurement.</param>
+/// <param name="NoiseRms">R.m.s. noise of one element of the row, in the matrix' unit; NaN where it cannot be known.</param>
+public sealed record PixelFacts(
+    ImmutableArray<int> Y,
+    ImmutableArray<int> X,
+    ImmutableArray<bool> Valid,
+    ImmutableArray<float> Visibility,
+    ImmutableArray<float> NoiseRms);
+
+/// <summary>Facts on the columns, arrays of one entry a macro-pixel.</summary>
+/// <param name="Valid">Whether the column may be used.</param>
+/// <param name="NoiseRms">R.m.s. noise of one element of the column, in the matrix' unit; NaN where it cannot be known.</param>
+public sealed record ModeFacts(ImmutableArray<bool> Valid, ImmutableArray<float> NoiseRms);
+
+/// <summary>How the drift was followed.</summary>
+public enum DriftMethod
+{
+    /// <summary>There were no trackers: nothing was removed.</summary>
+    None,
+
+    /// <summary>Tracker phases, unwrapped and interpolated in time.</summary>
+    TrackersInterpolated,
+}
+
+/// <summary>The phase drift that was found and removed.</summary>
+/// <param name="Method">How it was followed.</param>
+/// <param name="TrackerTimeS">Mean time of each tracker, seconds.</param>
+/// <param name="TrackerPhaseRad">Unwrapped phase of each tracker relative to the first, radians.</param>
+/// <param name="TrackerOverlap">|⟨D_0, D_k⟩|²/(⟨D_0,D_0⟩⟨D_k,D_k⟩) of each tracker with the first: 1 when nothing but phase changed.</param>
+/// <param name="FramePhaseRad">The phase removed from each frame, radians.</param>
+public sealed record DriftFacts(
+    DriftMethod Method,
+    ImmutableArray<double> TrackerTimeS,
+    ImmutableArray<double> TrackerPhaseRad,
+    ImmutableArray<double> TrackerOverlap,
+    ImmutableArray<double> FramePhaseRad)
+{
+    /// <summary>Largest phase change between one tracker and the next, radians; 0 with fewer than two.</summary>
+    public double LargestGapRad =>
+        TrackerPhaseRad.Zip(TrackerPhaseRad.Skip(1), (a, b) => Math.Abs(b - a)).DefaultIfEmpty(0).Max();
+}
+
+/// <summary>Figures on how far to trust a matrix.</summary>
+/// <param name="MeanVisibility">Mean of the valid pixels' visibility.</param>
+/// <param name="SignalToNoise">Mean |t|² over mean noise² of the valid rows; NaN where noise cannot be known (three steps).</param>
+/// <param name="ValidPixels">Number of valid rows.</param>
+/// <param name="ValidModes">Number of valid columns.</param>
+/// <param name="RowsNormalised">Whether rows were divided by √(reference intensity).</param>
+/// <param name="Warnings">What a careful user should know, one sentence each.</param>
+public sealed record MatrixQuality(
+    double MeanVisibility,
+    double SignalToNoise,
+    int ValidPixels,
+    int ValidModes,
+    bool RowsNormalised,
+    ImmutableArray<string> Warnings);

@@ -63,7 +63,7 @@ internal sealed class TiffFrameSource : IFrameSource
             _page = 0;
         }
 
-        _stream ??= InputFile.OpenSequential(Current.Path, Current.Name);
+        _stream ??= InputFile.OpenSequential(Current.Path, Current.Name, bufferBytes: 4096);
         ReadPage(_stream, destination[..FrameSize.PixelCount]);
         _page++;
         _next++;
@@ -88,9 +88,9 @@ internal sealed class TiffFrameSource : IFrameSource
     private void ReadPage(FileStream stream, Span<ushort> destination)
     {
         TiffStructure structure = Current.Structure;
-        if (structure.BackToBackOffset is { } offset)
+        if (structure.RawOffset(_page) is { } offset)
         {
-            ReadBackToBack(stream, structure, offset, destination);
+            ReadRaw(stream, structure, offset, destination);
             return;
         }
 
@@ -98,7 +98,7 @@ internal sealed class TiffFrameSource : IFrameSource
         _decoder.Read(_page, destination);
     }
 
-    private void ReadBackToBack(FileStream stream, TiffStructure structure, long offset, Span<ushort> destination)
+    private void ReadRaw(FileStream stream, TiffStructure structure, long offset, Span<ushort> destination)
     {
         RawPixelFormat format = (structure.Format.Bits, structure.IsBigEndian) switch
         {
@@ -106,7 +106,7 @@ internal sealed class TiffFrameSource : IFrameSource
             (_, false) => RawPixelFormat.UInt16LittleEndian,
             _ => RawPixelFormat.UInt16BigEndian,
         };
-        stream.Position = offset + ((long)_page * FrameSize.PixelCount * RawPixels.BytesOf(format));
+        stream.Position = offset;
         try
         {
             RawPixels.Read(stream, format, destination);

@@ -16,6 +16,7 @@ internal sealed partial class TiffStructure
 {
     private const int LongestDescription = 1 << 16;
     private const int Description = 270;
+    private const int FillOrder = 266;
     private const int StripOffsets = 273;
     private const int StripByteCounts = 279;
 
@@ -23,9 +24,9 @@ internal sealed partial class TiffStructure
     private readonly string _name;
     private readonly long _length;
     private readonly List<long> _pages = [];
+    private readonly List<long> _rawOffsets = [];
     private bool _isBig;
     private string? _description;
-    private (long Offset, long Bytes)? _firstData;
 
     private TiffStructure(Stream stream, string name)
     {
@@ -51,8 +52,16 @@ internal sealed partial class TiffStructure
     /// </summary>
     public int FrameCount { get; private set; }
 
-    /// <summary>Where frames that stand back to back behind a single directory begin; null for files with one directory a page.</summary>
-    public long? BackToBackOffset { get; private set; }
+    /// <summary>
+    /// Where a frame's counts stand in one uncompressed run of whole bytes, so that they need no decoding; null where they do not.
+    /// </summary>
+    public long? RawOffset(int frame)
+    {
+        long offset = frame < _rawOffsets.Count ? _rawOffsets[frame] : _rawOffsets[0] + (frame * FrameBytes);
+        return offset < 0 ? null : offset;
+    }
+
+    private long FrameBytes => FrameSize.PixelCount * Format.Bits / 8;
 
     /// <summary>Walks all directories.</summary>
     /// <exception cref="BadInputException">No TIFF, cut short, damaged, of unequal pages, or of a kind that is not read.</exception>
@@ -177,7 +186,6 @@ internal sealed partial class TiffStructure
         if (_pages.Count == 0)
         {
             TakeFormat(format);
-            _firstData = tags.TryGetValue(StripOffsets, out long at) ? (at, Tag(StripByteCounts, 0)) : null;
         }
         else if (format != Format)
         {
@@ -193,7 +201,12 @@ internal sealed partial class TiffStructure
         }
 
         _pages.Add(offset);
+        _rawOffsets.Add(IsRaw(format, tags) ? data : -1);
     }
+
+    private bool IsRaw(TiffPageFormat format, Dictionary<int, long> tags) =>
+        format.Compression == TiffPageFormat.Uncompressed && format.Bits is (8 or 16) && tags.ContainsKey(StripOffsets)
+        && tags.GetValueOrDefault(FillOrder, 1) == 1 && tags.GetValueOrDefault(StripByteCounts, -1) >= FrameBytes;
 
     private void TakeFormat(TiffPageFormat format)
     {
@@ -215,14 +228,13 @@ internal sealed partial class TiffStructure
             return;
         }
 
-        long frameBytes = FrameSize.PixelCount * Format.Bits / 8;
-        if (_pages.Count > 1 || _firstData is null || Format.Compression != TiffPageFormat.Uncompressed || Format.Bits == 12)
+        if (_pages.Count > 1 || RawOffset(0) is not { } first)
         {
             throw new BadInputException(
                 _name, PagePlace(_pages.Count), $"the file announces {announced} images but holds {_pages.Count} pages: it is cut short", "copy it again from the bench");
         }
 
-        long whole = (_length - _firstData.Value.Offset) / frameBytes;
+        long whole = (_length - first) / FrameBytes;
         if (whole < announced)
         {
             throw new BadInputException(
@@ -230,7 +242,6 @@ internal sealed partial class TiffStructure
         }
 
         FrameCount = announced;
-        BackToBackOffset = _firstData.Value.Offset;
     }
 
     /// <summary>

@@ -4,8 +4,8 @@ using TmLab.Quantities;
 namespace TmLab.Simulation;
 
 /// <summary>
-/// The measurement that ships with the program. Bench, place and object are invented: a pane of the storm lantern of the
-/// Quillhaven light, frosted by a century of blown sand that never blew. The numbers are those of an ordinary bench: 256 macro-pixels,
+/// The measurement that ships with the program. Bench, place and object are invented: a frosted pane of the storm lantern of the
+/// Quillhaven light, which does not exist. The numbers are those of an ordinary bench: 256 macro-pixels,
 /// four steps, a drift of several radians, shot noise, a few dead pixels.
 /// </summary>
 public static class DemoMeasurement

@@ -17,9 +17,28 @@ internal static class CommandLine
     /// <summary>Parses and runs one command line.</summary>
     public static ExitCode Run(IReadOnlyList<string> arguments, IStages stages, ToolConsole console, CancellationToken cancellation)
     {
-        Command root = CreateTree(stages, new CommandRunner(console, cancellation));
+        try
+        {
+            return Invoke(Parse(arguments, stages, new CommandRunner(console, cancellation)), console);
+        }
+        catch (Exception exception)
+        {
+            // Failures of the work end in the runner; what comes here is a fault of the command line itself.
+            var failure = Failure.From(exception);
+            failure.Write(console.Messages, withTrace: true);
+            return failure.ExitCode;
+        }
+    }
+
+    private static ParseResult Parse(IReadOnlyList<string> arguments, IStages stages, CommandRunner runner)
+    {
         // A word that begins with @ is a file name like any other, not a file of further words.
-        ParseResult parse = root.Parse(arguments, new ParserConfiguration { ResponseFileTokenReplacer = null });
+        var configuration = new ParserConfiguration { ResponseFileTokenReplacer = null };
+        return CreateTree(stages, runner).Parse(arguments, configuration);
+    }
+
+    private static ExitCode Invoke(ParseResult parse, ToolConsole console)
+    {
         if (UsageErrors.Any(parse) && parse.Action is not HelpWithExample)
         {
             UsageErrors.Write(parse, console.Messages);

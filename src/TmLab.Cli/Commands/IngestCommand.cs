@@ -17,6 +17,7 @@ internal sealed class IngestCommand : ToolCommand
     {
         Add(_folder);
         Add(_output);
+        PathOptions.RefuseSamePath(this, _folder, _output);
         SetAction(parse => (int)runner.Run(parse, context => Execute(stages, ReadRequest(parse), context)));
     }
 

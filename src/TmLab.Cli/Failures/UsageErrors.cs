@@ -28,8 +28,9 @@ internal static class UsageErrors
     private static IEnumerable<string> Lines(ParseResult parse)
     {
         Command command = parse.CommandResult.Command;
+        bool commandMissing = command.Subcommands.Count > 0 && parse.UnmatchedTokens is [var first, ..] && !first.StartsWith('-');
         string[] options = [.. UnknownOptions(parse)];
-        if (options.Length > 0)
+        if (options.Length > 0 && !commandMissing)
         {
             return options.Select(o => Unknown(command, o));
         }

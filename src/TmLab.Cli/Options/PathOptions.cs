@@ -24,13 +24,16 @@ internal static class PathOptions
     public static void RefuseSamePath(Command command, Argument<string> input, Option<string> output) =>
         command.Validators.Add(result =>
         {
-            string? from = result.GetValue(input);
-            string? to = result.GetValue(output);
+            string? from = Word(result.GetResult(input));
+            string? to = Word(result.GetResult(output));
             if (!string.IsNullOrEmpty(from) && !string.IsNullOrEmpty(to) && Path.GetFullPath(from) == Path.GetFullPath(to))
             {
                 result.AddError($"--output {to}: is the input itself; stage files are never edited, so name another file");
             }
         });
+
+    /// <summary>What was typed. Asking for the value would throw where the word is missing.</summary>
+    private static string? Word(SymbolResult? result) => result?.Tokens.LastOrDefault()?.Value;
 
     private static void RefuseEmpty(SymbolResult result, string name)
     {

@@ -11,7 +11,7 @@ public sealed class UsageTests
         { "", "Required command was not provided" },
         { "ingset folder -o m.h5", "unknown command 'ingset'; did you mean 'ingest'?" },
         { "zzzzzz", "unknown command 'zzzzzz'" },
-        { "ingest", "Required argument missing for command" },
+        { "ingest", "Required argument 'FOLDER' missing" },
         { "ingest folder", "Option '--output' is required" },
         { "ingest folder --ouput m.h5", "unknown option '--ouput'; did you mean '--output'?" },
         { "ingest --hepl", "unknown option '--hepl'; did you mean '--help'?" },

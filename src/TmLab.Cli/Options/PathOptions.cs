@@ -33,7 +33,7 @@ internal static class PathOptions
         });
 
     /// <summary>What was typed. Asking for the value would throw where the word is missing.</summary>
-    private static string? Word(SymbolResult? result) => result?.Tokens.LastOrDefault()?.Value;
+    private static string? Word(SymbolResult? result) => result is { Tokens: [.., var last] } ? last.Value : null;
 
     private static void RefuseEmpty(SymbolResult result, string name)
     {

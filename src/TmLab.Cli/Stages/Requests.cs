@@ -1,0 +1,22 @@
+using System.Collections.Immutable;
+using TmLab.Quantities;
+
+namespace TmLab.Cli.Stages;
+
+/// <summary>A measurement folder to be taken into a measurement file.</summary>
+internal sealed record IngestRequest(string Folder, string Output);
+
+/// <summary>A measurement file to be turned into a matrix file.</summary>
+internal sealed record ReconstructRequest(string Input, string Output);
+
+/// <summary>A matrix file to be decomposed into a channel file.</summary>
+internal sealed record ChannelsRequest(string Input, string Output);
+
+/// <summary>A matrix file from which to make a mask that focuses on the targets.</summary>
+internal sealed record MaskRequest(string Input, ImmutableArray<CameraPixel> Targets, string Output);
+
+/// <summary>A file to be described.</summary>
+internal sealed record ShowRequest(string Input);
+
+/// <summary>All stages in one; without targets the valid pixel nearest to the centre of the camera region is taken.</summary>
+internal sealed record RunRequest(string Folder, string OutputFolder, ImmutableArray<CameraPixel> Targets);

@@ -91,9 +91,14 @@ public sealed class ChannelFileReader : IDisposable
             _file.ReadTexts(group + "/warnings"));
     }
 
-    private MarchenkoPasturComparison ReadMarchenkoPastur()
+    private MarchenkoPasturComparison? ReadMarchenkoPastur()
     {
         const string law = "/spectrum/marchenko_pastur";
+        if (!_file.Has(law))
+        {
+            return null;
+        }
+
         double[] probability = _file.ReadArray<double>(law + "/probability", -1);
         return new MarchenkoPasturComparison(
             _file.Attribute<double>(law, "aspect_ratio"),
@@ -102,6 +107,7 @@ public sealed class ChannelFileReader : IDisposable
             [.. probability],
             [.. _file.ReadArray<double>(law + "/predicted_quantile", probability.Length)],
             [.. _file.ReadArray<double>(law + "/measured_quantile", probability.Length)],
-            _file.Attribute<double>(law, "distance"));
+            _file.Attribute<double>(law, "distance"),
+            _file.Attribute<int>(law, "compatible") != 0);
     }
 }

@@ -89,7 +89,11 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
             [.. times],
             [.. _file.ReadArray<double>("/drift/tracker_phase_rad", -1)],
             [.. _file.ReadArray<double>("/drift/tracker_overlap", -1)],
-            [.. _file.ReadArray<double>("/drift/frame_phase_rad", -1)]);
+            [.. _file.ReadArray<double>("/drift/frame_phase_rad", -1)],
+            [.. _file.ReadArray<double>("/drift/frame_phase_sd_rad", -1)],
+            [.. _file.ReadArray<double>("/drift/step_error_rad", -1)],
+            [.. _file.ReadArray<double>("/drift/frame_gain", -1)],
+            _file.Attribute<double>("/drift", "walk_rate_rad2_per_s"));
     }
 
     private MatrixQuality ReadQuality()

@@ -1,0 +1,137 @@
+using System.Collections.Immutable;
+using System.Numerics;
+using TmLab.Measurement;
+
+namespace TmLab.Reconstruction.Drift;
+
+/// <summary>The phases of the frames inside every group, found from a sample of pixels. See <see cref="GroupFit"/> for the model.</summary>
+internal sealed class GroupPhases
+{
+    private const int Rounds = 4;
+
+    private readonly PixelSample _sample;
+    private readonly ReconstructionSettings _settings;
+
+    private GroupPhases(ImmutableArray<StepGroup> groups, ImmutableArray<double> commandedRad, PixelSample sample, ReconstructionSettings settings)
+    {
+        (_sample, _settings) = (sample, settings);
+        Groups = groups;
+        Fits = [.. groups.Select(g => new GroupFit([.. g.Frames], [.. g.Frames.Select(f => commandedRad[f])], sample))];
+    }
+
+    /// <summary>The groups, modes and trackers, in the order of recording.</summary>
+    public ImmutableArray<StepGroup> Groups { get; }
+
+    /// <summary>One fit a group.</summary>
+    public GroupFit[] Fits { get; }
+
+    /// <summary>Finds them; null where there are too few groups or pixels for the model.</summary>
+    /// <param name="schedule">The frames.</param>
+    /// <param name="commandedRad">The commanded phase of every frame, signed for the stepped arm.</param>
+    /// <param name="sample">The counts at some pixels.</param>
+    /// <param name="settings">Threads and spreads.</param>
+    /// <param name="cancel">Stops the work.</param>
+    public static GroupPhases? Find(
+        Schedule schedule, ImmutableArray<double> commandedRad, PixelSample sample, ReconstructionSettings settings, CancellationToken cancel)
+    {
+        var phases = new GroupPhases(schedule.Groups, commandedRad, sample, settings);
+        return phases.Run(cancel) ? phases : null;
+    }
+
+    /// <summary>Σ_p D_k conj(D_0) over the sample with pixels left out where either is unknown, and the two energies.</summary>
+    public (Complex Overlap, double EnergyA, double EnergyB, int Pixels) Overlap(int a, int b)
+    {
+        Complex overlap = 0;
+        double energyA = 0, energyB = 0;
+        int pixels = 0;
+        for (int p = 0; p < _sample.Count; p++)
+        {
+            Complex x = Fits[a].Field[p], y = Fits[b].Field[p];
+            if (Complex.IsFinite(x) && Complex.IsFinite(y))
+            {
+                overlap += x * Complex.Conjugate(y);
+                energyA += (x.Real * x.Real) + (x.Imaginary * x.Imaginary);
+                energyB += (y.Real * y.Real) + (y.Imaginary * y.Imaginary);
+                pixels++;
+            }
+        }
+
+        return (overlap, energyA, energyB, pixels);
+    }
+
+    private bool Run(CancellationToken cancel)
+    {
+        if (Fits.Length < CoherenceModel.FewestGroups)
+        {
+            return false;
+        }
+
+        double[]? variance = null;
+        for (int round = 0; round < Rounds; round++)
+        {
+            CoherenceModel? model = FitModel(variance, cancel);
+            if (model is null)
+            {
+                return false;
+            }
+
+            variance = ImproveAll(model, cancel);
+        }
+
+        return true;
+    }
+
+    private CoherenceModel? FitModel(double[]? variance, CancellationToken cancel)
+    {
+        var backgrounds = new double[Fits.Length][];
+        ForEachGroup(cancel, k =>
+        {
+            backgrounds[k] = new double[_sample.Count];
+            Fits[k].FitFields(backgrounds[k]);
+        });
+        int pixels = _sample.Count;
+        (double[] alpha, double[] beta, double[] spread) = (new double[pixels], new double[pixels], new double[pixels]);
+        Parallel.For(0, pixels, Options(cancel), p =>
+        {
+            double[] a = [.. backgrounds.Select(b => b[p])];
+            double[] q = [.. Fits.Select(f => Square(f.Field[p]))];
+            bool usable = CoherenceModel.TryFit(a, q, out alpha[p], out beta[p]);
+            // Before residuals are known, shot noise gives the pixels' relative weights.
+            spread[p] = usable ? variance?[p] ?? Math.Max(alpha[p], 1) : double.PositiveInfinity;
+        });
+        return spread.Any(double.IsFinite) ? new CoherenceModel(alpha, beta, spread) : null;
+    }
+
+    /// <summary>One step for every group; returns each pixel's variance about the model.</summary>
+    private double[] ImproveAll(CoherenceModel model, CancellationToken cancel)
+    {
+        var residuals = new double[Fits.Length][];
+        ForEachGroup(cancel, k =>
+        {
+            residuals[k] = new double[_sample.Count];
+            Fits[k].Improve(model, _settings.PowerSpread, residuals[k]);
+        });
+        var variance = new double[_sample.Count];
+        for (int p = 0; p < variance.Length; p++)
+        {
+            double sum = 0;
+            int freedom = 0;
+            for (int k = 0; k < Fits.Length; k++)
+            {
+                sum += residuals[k][p];
+                freedom += residuals[k][p] > 0 ? Fits[k].PhaseRad.Length - 2 : 0;
+            }
+
+            variance[p] = freedom > 0 ? Math.Max(sum / freedom, 1.0 / 12) : double.PositiveInfinity;
+        }
+
+        return variance;
+    }
+
+    private void ForEachGroup(CancellationToken cancel, Action<int> action) => Parallel.For(0, Fits.Length, Options(cancel), action);
+
+    private ParallelOptions Options(CancellationToken cancel) =>
+        new() { MaxDegreeOfParallelism = _settings.Threads, CancellationToken = cancel };
+
+    private static double Square(Complex z) => (z.Real * z.Real) + (z.Imaginary * z.Imaginary);
+}

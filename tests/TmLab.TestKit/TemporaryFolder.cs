@@ -1,0 +1,21 @@
+namespace TmLab.TestKit;
+
+/// <summary>A folder of a test's own, deleted with all that is in it.</summary>
+public sealed class TemporaryFolder : IDisposable
+{
+    /// <summary>Makes an empty folder.</summary>
+    public TemporaryFolder() => Path = Directory.CreateTempSubdirectory("tmlab-test-").FullName;
+
+    /// <summary>The folder.</summary>
+    public string Path { get; }
+
+    /// <summary>The names of the files in it, sorted.</summary>
+    public IReadOnlyList<string> FileNames =>
+        [.. Directory.GetFiles(Path).Select(f => System.IO.Path.GetFileName(f)).Order(StringComparer.Ordinal)];
+
+    /// <summary>A name in it.</summary>
+    public string File(string name) => System.IO.Path.Combine(Path, name);
+
+    /// <inheritdoc/>
+    public void Dispose() => Directory.Delete(Path, recursive: true);
+}

@@ -85,10 +85,10 @@ public sealed class ChannelFileReader : IDisposable
             InputModes?.ColumnCount ?? 0,
             _file.Attribute<double>(group, "participation_number"),
             ReadMarchenkoPastur(),
-            _file.TryAttribute<string>(group, "method") ?? "",
-            _file.TryAttribute<string>(group, "engine") ?? "",
+            _file.Text(group, "method"),
+            _file.Text(group, "engine"),
             _file.Attribute<double>(group, "diagonal_error"),
-            _file.ReadTexts(group + "/warnings"));
+            _file.Lines(group, "warnings"));
     }
 
     private MarchenkoPasturComparison? ReadMarchenkoPastur()

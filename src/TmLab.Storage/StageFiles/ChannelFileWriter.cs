@@ -90,7 +90,7 @@ public sealed class ChannelFileWriter : IDisposable
         _file.AddAttribute(group, "method", facts.Method);
         _file.AddAttribute(group, "engine", facts.Engine);
         _file.AddAttribute(group, "diagonal_error", facts.DiagonalError);
-        _file.AddTexts(group + "/warnings", facts.Warnings);
+        _file.AddLines(group, "warnings", facts.Warnings);
 
         const string law = group + "/marchenko_pastur";
         if (facts.MarchenkoPastur is not MarchenkoPasturComparison comparison)

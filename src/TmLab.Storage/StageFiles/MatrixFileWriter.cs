@@ -99,7 +99,7 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         _file.AddAttribute(group, "valid_pixels", quality.ValidPixels);
         _file.AddAttribute(group, "valid_modes", quality.ValidModes);
         _file.AddAttribute(group, "rows_normalised", quality.RowsNormalised ? 1 : 0);
-        _file.AddTexts(group + "/warnings", quality.Warnings);
+        _file.AddLines(group, "warnings", quality.Warnings);
     }
 
     private static byte[] Flags(IEnumerable<bool> flags) => [.. flags.Select(f => f ? (byte)1 : (byte)0)];

@@ -1,9 +1,10 @@
 using System.Reflection;
+using System.Runtime.CompilerServices;
 using System.Text;
 
 namespace TmLab.RulesTests;
 
-/// <summary>Writes an assembly's public surface as sorted text, one member a line.</summary>
+/// <summary>Writes an assembly's public surface as sorted text, one member a line; what the compiler adds to records is left out.</summary>
 internal static class PublicApiListing
 {
     private const BindingFlags Declared =
@@ -37,7 +38,8 @@ internal static class PublicApiListing
             _ => (type.IsAbstract && type.IsSealed ? "static " : type.IsAbstract ? "abstract " : type.IsSealed ? "sealed " : "")
                 + (PublicTypes.IsRecord(type) ? "record" : "class"),
         };
-        Type[] inherited = [.. type.GetInterfaces().Except(type.GetInterfaces().SelectMany(i => i.GetInterfaces()))];
+        IEnumerable<Type> implied = type.GetInterfaces().SelectMany(i => i.GetInterfaces()).Concat(type.BaseType?.GetInterfaces() ?? []);
+        Type[] inherited = [.. type.GetInterfaces().Except(implied)];
         IEnumerable<string> bases = (type.BaseType is { } b && b != typeof(object) && b != typeof(ValueType) && b != typeof(Enum) ? [b] : Type.EmptyTypes)
             .Concat(type.IsEnum ? [] : inherited)
             .Select(TypeName)
@@ -55,7 +57,7 @@ internal static class PublicApiListing
 
         IEnumerable<string> constructors = type.GetConstructors(Declared).Where(IsVisible).Select(c => $"new({Parameters(c)})");
         IEnumerable<string> methods = type.GetMethods(Declared)
-            .Where(m => IsVisible(m) && !IsAccessor(m) && !m.Name.Contains('<', StringComparison.Ordinal))
+            .Where(m => IsVisible(m) && !IsAccessor(m) && !m.IsDefined(typeof(CompilerGeneratedAttribute)))
             .Select(m => $"{Static(m.IsStatic)}{TypeName(m.ReturnType)} {m.Name}{Generics(m)}({Parameters(m)})");
         IEnumerable<string> properties = type.GetProperties(Declared).Where(p => p.GetAccessors(nonPublic: true).Any(IsVisible)).Select(Describe);
         IEnumerable<string> fields = type.GetFields(Declared).Where(f => f.IsPublic || f.IsFamily).Select(Describe);

@@ -1,6 +1,7 @@
 using System.CommandLine;
 using System.CommandLine.Parsing;
 using System.Globalization;
+using TmLab.Numerics.LinearAlgebra;
 
 namespace TmLab.Cli.Options;
 

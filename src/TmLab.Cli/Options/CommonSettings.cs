@@ -1,17 +1,6 @@
+using TmLab.Numerics.LinearAlgebra;
+
 namespace TmLab.Cli.Options;
-
-/// <summary>Which linear-algebra engine to use.</summary>
-internal enum EngineChoice
-{
-    /// <summary>The native library where one is found and passes its self-test, the managed engine otherwise.</summary>
-    Auto,
-
-    /// <summary>The managed engine.</summary>
-    Managed,
-
-    /// <summary>The native library; a failure when there is none.</summary>
-    Native,
-}
 
 /// <summary>What every command can be told.</summary>
 /// <param name="Force">Overwrite existing outputs.</param>

@@ -14,7 +14,7 @@ internal sealed record ChannelsReport(
     int StoredChannelCount,
     double LargestNormalisedSingularValue,
     double ParticipationNumber,
-    MarchenkoPasturSection MarchenkoPastur,
+    MarchenkoPasturSection? MarchenkoPastur,
     string Method,
     string Engine,
     double DiagonalError,
@@ -31,7 +31,7 @@ internal sealed record ChannelsReport(
         facts.ChannelCount,
         facts.NormalisedSingularValues.DefaultIfEmpty(double.NaN).First(),
         facts.ParticipationNumber,
-        MarchenkoPasturSection.From(facts.MarchenkoPastur),
+        facts.MarchenkoPastur is null ? null : MarchenkoPasturSection.From(facts.MarchenkoPastur),
         facts.Method,
         facts.Engine,
         facts.DiagonalError,
@@ -47,7 +47,7 @@ internal sealed record ChannelsReport(
         text.Row("channels", $"{TextReport.Count(SingularValueCount)} singular values, {TextReport.Count(StoredChannelCount)} with vectors");
         text.Row("largest", $"{TextReport.Figure(LargestNormalisedSingularValue)} times the r.m.s. singular value");
         text.Row("participation number", ParticipationNumber);
-        MarchenkoPastur.WriteText(text);
+        MarchenkoPastur?.WriteText(text);
         text.Row("method", Method);
         text.Row("engine", Engine);
         text.Row("error of U†TV − Σ", DiagonalError, "of the largest singular value");
@@ -60,17 +60,19 @@ internal sealed record MarchenkoPasturSection(
     double LowerEdge,
     double UpperEdge,
     double Distance,
+    bool IsCompatible,
     ImmutableArray<double> Probability,
     ImmutableArray<double> PredictedQuantile,
     ImmutableArray<double> MeasuredQuantile)
 {
     public static MarchenkoPasturSection From(MarchenkoPasturComparison c) => new(
-        c.AspectRatio, c.LowerEdge, c.UpperEdge, c.Distance, c.Probability, c.PredictedQuantile, c.MeasuredQuantile);
+        c.AspectRatio, c.LowerEdge, c.UpperEdge, c.Distance, c.IsCompatible, c.Probability, c.PredictedQuantile, c.MeasuredQuantile);
 
     public void WriteText(TextReport text)
     {
         text.Row("Marchenko–Pastur", $"aspect ratio {TextReport.Figure(AspectRatio)}, edges {TextReport.Figure(LowerEdge)} and {TextReport.Figure(UpperEdge)}");
-        text.Row("distance from it", $"{TextReport.Figure(Distance)} (largest difference of the distributions)");
+        text.Row("distance from it", $"{TextReport.Figure(Distance)} (largest difference of the distributions): "
+            + (IsCompatible ? "as for independent elements" : "more than independent elements give"));
         for (int k = 0; k < Probability.Length; k++)
         {
             text.Row(

@@ -1,27 +1,89 @@
+using System.Collections.Immutable;
 using TmLab.Channels;
 using TmLab.Cli.Reports;
+using TmLab.Failures;
 using TmLab.Matrix;
 using TmLab.Measurement;
+using TmLab.Numerics.LinearAlgebra;
+using TmLab.Reconstruction;
+using TmLab.Shaping;
+using TmLab.Storage.Ingest;
+using TmLab.Storage.Manifest;
+using TmLab.Storage.StageFiles;
 
 namespace TmLab.Cli.Stages;
 
 /// <summary>The stages on real files.</summary>
 internal sealed class StoredStages : IStages
 {
-    public MeasurementFacts Ingest(IngestRequest request, StageContext context) =>
-        throw new NotSupportedException("ingest is not connected yet");
+    public MeasurementFacts Ingest(IngestRequest request, StageContext context)
+    {
+        using OpenedMeasurement measurement = MeasurementFolder.Open(request.Folder);
+        StageProvenance provenance = Provenance.Of(context, [measurement.ManifestPath], new { request.Folder });
+        using var writer = new MeasurementFileWriter(
+            request.Output, context.Settings.Force, provenance, measurement.Frames.FrameCount, measurement.Frames.FrameSize);
+        return Ingestion.Run(measurement, writer, context.Progress, context.Cancellation);
+    }
 
-    public TransmissionMatrixFacts Reconstruct(ReconstructRequest request, StageContext context) =>
-        throw new NotSupportedException("reconstruct is not connected yet");
+    public TransmissionMatrixFacts Reconstruct(ReconstructRequest request, StageContext context)
+    {
+        using var measurement = new MeasurementFileReader(request.Input);
+        var defaults = new ReconstructionSettings();
+        ReconstructionSettings settings = defaults with
+        {
+            MemoryBytes = context.Settings.MemoryBytes ?? defaults.MemoryBytes,
+            Threads = context.Settings.Threads ?? defaults.Threads,
+        };
+        StageProvenance provenance = Provenance.Of(context, [request.Input], settings);
+        MeasurementFacts facts = measurement.Facts;
+        using var writer = new MatrixFileWriter(
+            request.Output, context.Settings.Force, provenance, facts.PixelCount, facts.Manifest.Modes.ModeCount);
+        TransmissionMatrixFacts matrix =
+            MatrixReconstruction.Run(measurement, facts, settings, writer, context.Progress, context.Cancellation);
+        writer.Complete(matrix);
+        return matrix;
+    }
 
-    public ChannelFacts FindChannels(ChannelsRequest request, StageContext context) =>
-        throw new NotSupportedException("channels is not connected yet");
+    public ChannelFacts FindChannels(ChannelsRequest request, StageContext context)
+    {
+        using var matrix = new MatrixFileReader(request.Input);
+        var settings = new ChannelSettings();
+        var analysis = new ChannelAnalysis(matrix, matrix.Facts, request.Input, settings, Engine(context));
+        StageProvenance provenance = Provenance.Of(context, [request.Input], settings);
+        using var writer = new ChannelFileWriter(
+            request.Output, context.Settings.Force, provenance, analysis.PixelCount, analysis.ModeCount, analysis.ChannelCount);
+        ChannelFacts facts = analysis.ChannelCount == 0
+            ? analysis.Run(null, null, context.Progress, context.Cancellation)
+            : analysis.Run(writer.InputModes, writer.OutputModes, context.Progress, context.Cancellation);
+        writer.Complete(facts);
+        return facts;
+    }
 
-    public MaskOutcome MakeMask(MaskRequest request, StageContext context) =>
-        throw new NotSupportedException("mask is not connected yet");
+    public MaskOutcome MakeMask(MaskRequest request, StageContext context)
+    {
+        using var matrix = new MatrixFileReader(request.Input);
+        ImmutableArray<FocusTarget> targets = [.. request.Targets.Select(t => new FocusTarget(t))];
+        FocusMask mask = FocusMask.Make(matrix, matrix.Facts, request.Input, targets);
+        return MaskFiles.Write(request, mask, matrix.Facts, context);
+    }
 
-    public ShowReport Describe(ShowRequest request, StageContext context) =>
-        throw new NotSupportedException("show is not connected yet");
+    public ShowReport Describe(ShowRequest request, StageContext context) => StageDescription.Of(request.Input);
 
-    public AboutReport DescribeProgram() => AboutReport.Collect(engines: []);
+    public AboutReport DescribeProgram() => AboutReport.Collect(
+    [
+        .. new[] { EngineChoice.Native, EngineChoice.Managed }.Select(choice =>
+        {
+            EngineSelection found = LinearAlgebraEngines.Choose(choice);
+            return new EngineSection(
+                choice.ToString().ToLowerInvariant(), found.Succeeded, found.Engine?.Description ?? found.Explanation ?? "");
+        }),
+    ]);
+
+    private static ILinearAlgebraEngine Engine(StageContext context) =>
+        LinearAlgebraEngines.Choose(context.Settings.Engine) switch
+        {
+            { Engine: ILinearAlgebraEngine engine } => engine,
+            { Explanation: string why } => throw new NumericalException(why, "install OpenBLAS, or use --engine managed"),
+            _ => throw new NumericalException("no linear-algebra engine was found", "use --engine managed"),
+        };
 }

@@ -5,6 +5,7 @@ using SixLabors.ImageSharp.Formats.Png;
 using SixLabors.ImageSharp.PixelFormats;
 using TmLab.Failures;
 using TmLab.Quantities;
+using TmLab.Shaping;
 
 namespace TmLab.Storage.Images;
 

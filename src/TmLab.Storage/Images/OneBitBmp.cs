@@ -1,5 +1,6 @@
 using System.Buffers.Binary;
 using TmLab.Quantities;
+using TmLab.Shaping;
 
 namespace TmLab.Storage.Images;
 

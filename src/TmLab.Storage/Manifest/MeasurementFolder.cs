@@ -2,6 +2,7 @@ using System.Collections.Immutable;
 using System.Numerics;
 using TmLab.Failures;
 using TmLab.Measurement;
+using TmLab.Shaping;
 using TmLab.Storage.Frames;
 using TmLab.Storage.Images;
 

@@ -85,15 +85,20 @@ public sealed class ChannelFileReader : IDisposable
             InputModes?.ColumnCount ?? 0,
             _file.Attribute<double>(group, "participation_number"),
             ReadMarchenkoPastur(),
-            _file.TryAttribute<string>(group, "method") ?? "",
-            _file.TryAttribute<string>(group, "engine") ?? "",
+            _file.Text(group, "method"),
+            _file.Text(group, "engine"),
             _file.Attribute<double>(group, "diagonal_error"),
-            _file.ReadTexts(group + "/warnings"));
+            _file.Lines(group, "warnings"));
     }
 
-    private MarchenkoPasturComparison ReadMarchenkoPastur()
+    private MarchenkoPasturComparison? ReadMarchenkoPastur()
     {
         const string law = "/spectrum/marchenko_pastur";
+        if (!_file.Has(law))
+        {
+            return null;
+        }
+
         double[] probability = _file.ReadArray<double>(law + "/probability", -1);
         return new MarchenkoPasturComparison(
             _file.Attribute<double>(law, "aspect_ratio"),
@@ -102,6 +107,7 @@ public sealed class ChannelFileReader : IDisposable
             [.. probability],
             [.. _file.ReadArray<double>(law + "/predicted_quantile", probability.Length)],
             [.. _file.ReadArray<double>(law + "/measured_quantile", probability.Length)],
-            _file.Attribute<double>(law, "distance"));
+            _file.Attribute<double>(law, "distance"),
+            _file.Attribute<int>(law, "compatible") != 0);
     }
 }

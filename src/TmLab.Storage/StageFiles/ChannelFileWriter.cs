@@ -90,14 +90,19 @@ public sealed class ChannelFileWriter : IDisposable
         _file.AddAttribute(group, "method", facts.Method);
         _file.AddAttribute(group, "engine", facts.Engine);
         _file.AddAttribute(group, "diagonal_error", facts.DiagonalError);
-        _file.AddTexts(group + "/warnings", facts.Warnings);
+        _file.AddLines(group, "warnings", facts.Warnings);
 
         const string law = group + "/marchenko_pastur";
-        MarchenkoPasturComparison comparison = facts.MarchenkoPastur;
+        if (facts.MarchenkoPastur is not MarchenkoPasturComparison comparison)
+        {
+            return;
+        }
+
         _file.AddAttribute(law, "aspect_ratio", comparison.AspectRatio);
         _file.AddAttribute(law, "lower_edge", comparison.LowerEdge);
         _file.AddAttribute(law, "upper_edge", comparison.UpperEdge);
         _file.AddAttribute(law, "distance", comparison.Distance);
+        _file.AddAttribute(law, "compatible", comparison.IsCompatible ? 1 : 0);
         _file.Add(law + "/probability", comparison.Probability.ToArray(), "1");
         _file.Add(law + "/predicted_quantile", comparison.PredictedQuantile.ToArray(), "1");
         _file.Add(law + "/measured_quantile", comparison.MeasuredQuantile.ToArray(), "1");

@@ -85,11 +85,15 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
         double[] times = _file.ReadArray<double>("/drift/tracker_time_s", -1);
         return new DriftFacts(
             StoredNames.Parse<DriftMethod>(
-                _file, "/drift, attribute method", _file.TryAttribute<string>("/drift", "method") ?? ""),
+                _file, "/drift, attribute method", _file.Text("/drift", "method")),
             [.. times],
             [.. _file.ReadArray<double>("/drift/tracker_phase_rad", -1)],
             [.. _file.ReadArray<double>("/drift/tracker_overlap", -1)],
-            [.. _file.ReadArray<double>("/drift/frame_phase_rad", -1)]);
+            [.. _file.ReadArray<double>("/drift/frame_phase_rad", -1)],
+            [.. _file.ReadArray<double>("/drift/frame_phase_sd_rad", -1)],
+            [.. _file.ReadArray<double>("/drift/step_error_rad", -1)],
+            [.. _file.ReadArray<double>("/drift/frame_gain", -1)],
+            _file.Attribute<double>("/drift", "walk_rate_rad2_per_s"));
     }
 
     private MatrixQuality ReadQuality()
@@ -101,7 +105,7 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
             _file.Attribute<int>(group, "valid_pixels"),
             _file.Attribute<int>(group, "valid_modes"),
             _file.Attribute<int>(group, "rows_normalised") != 0,
-            _file.ReadTexts(group + "/warnings"));
+            _file.Lines(group, "warnings"));
     }
 
     private ImmutableArray<bool> Flags(string path, int count) => [.. _file.ReadArray<byte>(path, count).Select(f => f != 0)];

@@ -85,6 +85,10 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         _file.Add("/drift/tracker_phase_rad", drift.TrackerPhaseRad.ToArray(), "rad");
         _file.Add("/drift/tracker_overlap", drift.TrackerOverlap.ToArray(), "1");
         _file.Add("/drift/frame_phase_rad", drift.FramePhaseRad.ToArray(), "rad");
+        _file.Add("/drift/frame_phase_sd_rad", drift.FramePhaseSdRad.ToArray(), "rad");
+        _file.Add("/drift/step_error_rad", drift.StepErrorRad.ToArray(), "rad");
+        _file.Add("/drift/frame_gain", drift.FrameGain.ToArray(), "1");
+        _file.AddAttribute("/drift", "walk_rate_rad2_per_s", drift.WalkRateRad2PerS);
     }
 
     private void WriteQuality(MatrixQuality quality)
@@ -95,7 +99,7 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         _file.AddAttribute(group, "valid_pixels", quality.ValidPixels);
         _file.AddAttribute(group, "valid_modes", quality.ValidModes);
         _file.AddAttribute(group, "rows_normalised", quality.RowsNormalised ? 1 : 0);
-        _file.AddTexts(group + "/warnings", quality.Warnings);
+        _file.AddLines(group, "warnings", quality.Warnings);
     }
 
     private static byte[] Flags(IEnumerable<bool> flags) => [.. flags.Select(f => f ? (byte)1 : (byte)0)];

@@ -13,7 +13,7 @@ public sealed class MeasurementFileReader : IFrameBlockReader
 {
     internal const string Counts = "/frames/counts";
     internal const string Dark = "/camera/dark";
-    internal const string Manifest = "/manifest";
+    internal const string Manifest = "manifest";
     internal const string Patterns = "/modes/custom_patterns";
 
     private readonly StageFileReader _file;
@@ -77,7 +77,7 @@ public sealed class MeasurementFileReader : IFrameBlockReader
 
     private MeasurementFacts ReadFacts()
     {
-        MeasurementManifest manifest = ManifestText.Read(_file.Path, Manifest, _file.ReadText(Manifest));
+        MeasurementManifest manifest = ManifestText.Read(_file.Path, "attribute manifest", _file.Text("/", Manifest));
         return new MeasurementFacts(
             manifest,
             FrameSize,

@@ -57,7 +57,7 @@ public sealed class MeasurementFileWriter : IMeasurementSink, IDisposable
         ScheduleGroup.Write(_file, facts.Schedule);
         ScheduleGroup.Write(_file, facts.FrameFacts);
         _file.Add(MeasurementFileReader.Dark, facts.DarkCounts.ToArray(), "count", (ulong)_frameSize.Height, (ulong)_frameSize.Width);
-        _file.AddText(MeasurementFileReader.Manifest, ManifestText.Write(facts.Manifest));
+        _file.AddAttribute("/", MeasurementFileReader.Manifest, ManifestText.Write(facts.Manifest));
         WritePatterns(facts);
         GeometryGroup.WriteCalibration(_file, facts.PhaseLut, facts.Flatness);
         _file.Complete();

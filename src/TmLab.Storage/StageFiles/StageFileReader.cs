@@ -87,7 +87,7 @@ internal sealed class StageFileReader : IDisposable
         long[] wanted = shape.ToArray();
         return Guard(path, () =>
         {
-            NativeDataset dataset = Dataset(path);
+            NativeDataset dataset = Numbers(path);
             bool swapped = ElementTypes.RequireAndTellSwapped<T>(Path, path, dataset.Type);
             RequireShape(path, dataset, wanted);
             long count = RequirePlausible(path, dataset, sizeof(T));
@@ -101,15 +101,11 @@ internal sealed class StageFileReader : IDisposable
         });
     }
 
-    /// <summary>Reads a dataset of one text.</summary>
-    public string ReadText(string path) => Guard(path, () => TextDataset(path).Read<string>());
+    /// <summary>Reads a text that must be there.</summary>
+    public string Text(string path, string name) => TryAttribute<string>(path, name) ?? throw Missing($"{path}, attribute {name}");
 
-    /// <summary>Reads a dataset of lines of text.</summary>
-    public ImmutableArray<string> ReadTexts(string path) => Guard(path, () =>
-    {
-        NativeDataset dataset = TextDataset(path);
-        return dataset.Space.Dimensions is [0] ? [] : ImmutableArray.Create(dataset.Read<string[]>());
-    });
+    /// <summary>Reads lines of text; none when the attribute is absent.</summary>
+    public ImmutableArray<string> Lines(string path, string name) => [.. TryAttribute<string[]>(path, name) ?? []];
 
     /// <summary>Reads an attribute of a group or dataset; null when it is absent.</summary>
     public T? TryAttribute<T>(string path, string name)
@@ -147,7 +143,7 @@ internal sealed class StageFileReader : IDisposable
     /// <exception cref="BadInputException">It stands elsewhere.</exception>
     public void RequirePlace(string path, long offset)
     {
-        long? found = Guard(path, () => ContiguousPlace.FindOurs(Dataset(path), _stream, _file));
+        long? found = Guard(path, () => ContiguousPlace.FindOurs(Dataset(path), _stream));
         if (found != offset)
         {
             throw DamagedFiles.Damaged(Path, path, $"stands at byte {found?.ToString(CultureInfo.InvariantCulture) ?? "?"}, not {offset}");
@@ -181,9 +177,9 @@ internal sealed class StageFileReader : IDisposable
     /// <summary>Says where the file comes from.</summary>
     public StageProvenance Provenance()
     {
-        string[] files = TryAttribute<string[]>("/", "parent_file") ?? [];
-        string[] digests = TryAttribute<string[]>("/", "parent_sha256") ?? [];
-        string created = TryAttribute<string>("/", "created_utc") ?? throw Missing("attribute created_utc");
+        ImmutableArray<string> files = Lines("/", "parent_file");
+        ImmutableArray<string> digests = Lines("/", "parent_sha256");
+        string created = Text("/", "created_utc");
         if (files.Length != digests.Length || files.Length > StageProvenance.MostParents
             || !DateTimeOffset.TryParse(created, CultureInfo.InvariantCulture, DateTimeStyles.RoundtripKind, out DateTimeOffset time))
         {
@@ -192,8 +188,8 @@ internal sealed class StageFileReader : IDisposable
 
         return new StageProvenance(
             [.. files.Zip(digests, (f, d) => new StageParent(f, d))],
-            TryAttribute<string>("/", "settings") ?? "",
-            TryAttribute<string>("/", "tool_version") ?? "",
+            Text("/", "settings"),
+            Text("/", "tool_version"),
             time);
     }
 
@@ -266,11 +262,11 @@ internal sealed class StageFileReader : IDisposable
     private IDatasetBlocks<T> Blocks<T>(string path, int rank)
         where T : unmanaged
     {
-        NativeDataset dataset = Dataset(path);
+        NativeDataset dataset = Numbers(path);
         bool swapped = ElementTypes.RequireAndTellSwapped<T>(Path, path, dataset.Type);
         RequireShape(path, dataset, [.. Enumerable.Repeat(-1L, rank)]);
         _ = RequireStored(path, dataset, dataset.Type.Size);
-        if (ContiguousPlace.Find<T>(dataset, _stream, _file, IsSealed) is not { } offset)
+        if (ContiguousPlace.Find<T>(dataset, _stream) is not { } offset)
         {
             return new SelectedBlocks<T>(dataset, _gate, Path, path, swapped);
         }
@@ -290,15 +286,20 @@ internal sealed class StageFileReader : IDisposable
         return _hdf5.Get(path) as NativeDataset ?? throw DamagedFiles.Damaged(Path, path, "is not a dataset");
     }
 
-    private NativeDataset TextDataset(string path)
+    // A dataset of numbers, after a check that they are stored in the byte order that we read; files of ours always are.
+    private NativeDataset Numbers(string path)
     {
+        var transfers = new List<(long Position, int Length)>();
+        _stream.Transfers = transfers;
         NativeDataset dataset = Dataset(path);
-        if (dataset.Type.Class is not (H5DataTypeClass.String or H5DataTypeClass.VariableLength))
+        _ = dataset.Type.Size;
+        _stream.Transfers = null;
+        if (!IsSealed && ByteOrder.IsBigEndian(_file, transfers))
         {
-            throw DamagedFiles.Damaged(Path, path, $"holds {ElementTypes.Name(dataset.Type)}, needed text");
+            throw new BadInputException(
+                Path, path, "is stored with the most significant byte first", "rewrite the dataset with the least significant byte first");
         }
 
-        _ = RequirePlausible(path, dataset, dataset.Type.Size);
         return dataset;
     }
 
@@ -362,7 +363,7 @@ internal sealed class StageFileReader : IDisposable
         int blockBytes = Attribute<int>(name, "block_bytes");
         uint[] values = ReadArray<uint>(name, -1);
         long bytes = Guard(path, () => RequireStored(path, Dataset(path), Dataset(path).Type.Size));
-        long? offset = Guard(path, () => ContiguousPlace.FindOurs(Dataset(path), _stream, _file));
+        long? offset = Guard(path, () => ContiguousPlace.FindOurs(Dataset(path), _stream));
         if (offset is null)
         {
             return null;

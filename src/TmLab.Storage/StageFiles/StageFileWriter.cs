@@ -25,6 +25,9 @@ internal sealed class StageFileWriter : IDisposable
     /// <summary>The group of the large datasets' checksums, which mirrors the names of the datasets.</summary>
     public const string ChecksumGroup = "/checksums";
 
+    /// <summary>The largest number of lines of a text attribute.</summary>
+    public const int MostLines = 3000;
+
     private readonly AtomicOutput _output;
     private readonly SafeFileHandle _file;
     private readonly StageFormat _format;
@@ -87,11 +90,17 @@ internal sealed class StageFileWriter : IDisposable
         _tree.Add(path, new H5Dataset(values, fileDims: shape), units);
     }
 
-    /// <summary>Adds a text as a dataset.</summary>
-    public void AddText(string path, string text) => _tree.Add(path, new H5Dataset(text), "text");
-
-    /// <summary>Adds lines of text as a one-dimensional dataset.</summary>
-    public void AddTexts(string path, IEnumerable<string> lines) => _tree.Add(path, new H5Dataset(lines.ToArray()), "text");
+    /// <summary>Adds lines of text as an attribute; at most <see cref="MostLines"/>.</summary>
+    /// <remarks>
+    /// Texts are attributes and not datasets: HDF5 keeps texts of variable length apart from the attribute itself, so that their length
+    /// does not matter, while datasets of them as the library writes them cannot be copied by the HDF5 tools. Sixteen bytes a
+    /// line do count, and the library damages a file with an attribute of 60,000 bytes and more.
+    /// </remarks>
+    public void AddLines(string path, string name, ImmutableArray<string> lines)
+    {
+        Preconditions.InRange(lines.Length, 0, MostLines);
+        AddAttribute(path, name, lines.ToArray());
+    }
 
     /// <summary>Adds an attribute of a number or a text to a group or a dataset that has been added; null adds nothing.</summary>
     public void AddAttribute(string path, string name, object? value)

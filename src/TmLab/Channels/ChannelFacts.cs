@@ -16,8 +16,8 @@ namespace TmLab.Channels;
 /// <param name="Mode">Index of each macro-pixel that took part.</param>
 /// <param name="SingularValues">Singular values, descending, in the matrix' unit (not calibrated: only ratios mean something).</param>
 /// <param name="ChannelCount">How many leading channels have vectors stored; 0 for values only.</param>
-/// <param name="ParticipationNumber">(Σσ²)² / Σσ⁴: how many channels carry the transmission.</param>
-/// <param name="MarchenkoPastur">The spectrum beside the law for the matrix' shape.</param>
+/// <param name="ParticipationNumber">(Σσ²)² / Σσ⁴: how many channels carry the transmission; NaN when only leading values are known.</param>
+/// <param name="MarchenkoPastur">The spectrum beside the law for the matrix' shape; null when only leading values are known.</param>
 /// <param name="Method">How the decomposition was computed, in words.</param>
 /// <param name="Engine">The linear-algebra engine that was used, in words.</param>
 /// <param name="DiagonalError">Largest |U†TV − Σ| relative to σ₁ over the stored channels; NaN for values only.</param>
@@ -33,7 +33,7 @@ public sealed record ChannelFacts(
     ImmutableArray<double> SingularValues,
     int ChannelCount,
     double ParticipationNumber,
-    MarchenkoPasturComparison MarchenkoPastur,
+    MarchenkoPasturComparison? MarchenkoPastur,
     string Method,
     string Engine,
     double DiagonalError,
@@ -58,6 +58,7 @@ public sealed record ChannelFacts(
 /// <param name="PredictedQuantile">The law's quantiles of x.</param>
 /// <param name="MeasuredQuantile">The spectrum's quantiles of x.</param>
 /// <param name="Distance">Largest difference of the two cumulative distributions (Kolmogorov–Smirnov distance; no p-value: spectra are rigid).</param>
+/// <param name="IsCompatible">Whether that distance is within what independent elements give.</param>
 public sealed record MarchenkoPasturComparison(
     double AspectRatio,
     double LowerEdge,
@@ -65,4 +66,5 @@ public sealed record MarchenkoPasturComparison(
     ImmutableArray<double> Probability,
     ImmutableArray<double> PredictedQuantile,
     ImmutableArray<double> MeasuredQuantile,
-    double Distance);
+    double Distance,
+    bool IsCompatible);

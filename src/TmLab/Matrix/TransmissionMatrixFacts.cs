@@ -53,26 +53,50 @@ public sealed record ModeFacts(ImmutableArray<bool> Valid, ImmutableArray<float>
 /// <summary>How the drift was followed.</summary>
 public enum DriftMethod
 {
-    /// <summary>There were no trackers: nothing was removed.</summary>
+    /// <summary>Nothing was removed.</summary>
     None,
 
     /// <summary>Tracker phases, unwrapped and interpolated in time.</summary>
     TrackersInterpolated,
+
+    /// <summary>The phases of the frames inside every mode, joined by a smoother; trackers, where there are any, pin the path.</summary>
+    SmoothedPath,
 }
 
-/// <summary>The phase drift that was found and removed.</summary>
+/// <summary>The phase drift that was found and removed, and what else was found of the frames. Frame arrays have one entry a frame.</summary>
 /// <param name="Method">How it was followed.</param>
-/// <param name="TrackerTimeS">Mean time of each tracker, seconds.</param>
-/// <param name="TrackerPhaseRad">Unwrapped phase of each tracker relative to the first, radians.</param>
-/// <param name="TrackerOverlap">|⟨D_0, D_k⟩|²/(⟨D_0,D_0⟩⟨D_k,D_k⟩) of each tracker with the first: 1 when nothing but phase changed.</param>
-/// <param name="FramePhaseRad">The phase removed from each frame, radians.</param>
+/// <param name="TrackerTimeS">Mean time of each showing of the tracked pattern, seconds.</param>
+/// <param name="TrackerPhaseRad">Unwrapped phase of each showing relative to the first, radians.</param>
+/// <param name="TrackerOverlap">|⟨D_0, D_k⟩|²/(⟨D_0,D_0⟩⟨D_k,D_k⟩) of each showing with the first: 1 when nothing but phase changed.</param>
+/// <param name="FramePhaseRad">The drift φ removed from each frame, radians.</param>
+/// <param name="FramePhaseSdRad">Its standard deviation; NaN where it is not known.</param>
+/// <param name="StepErrorRad">Systematic error of each phase step s, radians of the signal's phase; the first is zero by definition. Removed too. Empty where not looked for.</param>
+/// <param name="FrameGain">Laser power of each frame relative to the mean; 1 where not looked for or not significant. Divided out.</param>
+/// <param name="WalkRateRad2PerS">Variance rate of the phase's random walk, rad²/s; NaN where not known.</param>
 public sealed record DriftFacts(
     DriftMethod Method,
     ImmutableArray<double> TrackerTimeS,
     ImmutableArray<double> TrackerPhaseRad,
     ImmutableArray<double> TrackerOverlap,
-    ImmutableArray<double> FramePhaseRad)
+    ImmutableArray<double> FramePhaseRad,
+    ImmutableArray<double> FramePhaseSdRad,
+    ImmutableArray<double> StepErrorRad,
+    ImmutableArray<double> FrameGain,
+    double WalkRateRad2PerS)
 {
+    /// <summary>No drift looked for or found: phases zero, powers one.</summary>
+    /// <param name="frames">Number of frames.</param>
+    public static DriftFacts None(int frames) => new(
+        DriftMethod.None,
+        [],
+        [],
+        [],
+        [.. new double[frames]],
+        [.. Enumerable.Repeat(double.NaN, frames)],
+        [],
+        [.. Enumerable.Repeat(1.0, frames)],
+        double.NaN);
+
     /// <summary>Largest phase change between one tracker and the next, radians; 0 with fewer than two.</summary>
     public double LargestGapRad =>
         TrackerPhaseRad.Zip(TrackerPhaseRad.Skip(1), (a, b) => Math.Abs(b - a)).DefaultIfEmpty(0).Max();

@@ -14,8 +14,12 @@ internal sealed class FrameWeightTable
     private readonly int[][] _frames;
     private readonly Complex64[][] _weights;
 
-    public FrameWeightTable(Schedule schedule, IPatternBasis basis, ImmutableArray<double> totalPhaseRad)
+    private readonly ImmutableArray<double> _gain;
+
+    public FrameWeightTable(Schedule schedule, IPatternBasis basis, ImmutableArray<double> totalPhaseRad, ImmutableArray<double> frameGain)
     {
+        _gain = frameGain;
+        DarkWeight = new Complex64[basis.PatternCount];
         _frames = new int[basis.PatternCount][];
         _weights = new Complex64[basis.PatternCount][];
         ColumnVariance = new double[basis.PatternCount];
@@ -27,6 +31,12 @@ internal sealed class FrameWeightTable
 
     /// <summary>Variance of D[·, k], before the basis' scale, for unit variance of each frame's counts.</summary>
     public double[] ColumnVariance { get; }
+
+    /// <summary>
+    /// Σ w of each pattern: what one count of dark level adds to its column. Zero as long as the laser power is constant, for which
+    /// the dark level drops out.
+    /// </summary>
+    public Complex64[] DarkWeight { get; }
 
     public ReadOnlySpan<int> Frames(int pattern) => _frames[pattern];
 
@@ -40,11 +50,14 @@ internal sealed class FrameWeightTable
         {
             StepFit fit = FramePhases.Fit(group, theta);
             frames.AddRange(group.Frames);
-            weights.AddRange(fit.Field.Select(w => Complex64.FromComplex(w * scale / showings.Length)));
+            weights.AddRange(group.Frames.Select((f, s) => Complex64.FromComplex(fit.Field[s] * scale / showings.Length / _gain[f])));
             ColumnVariance[pattern] += fit.FieldVariance / ((double)showings.Length * showings.Length);
         }
 
         _frames[pattern] = [.. frames];
         _weights[pattern] = [.. weights];
+        DarkWeight[pattern] = frames.All(f => _gain[f] == 1)
+            ? default
+            : new Complex64(weights.Sum(w => w.r), weights.Sum(w => w.i));
     }
 }

@@ -4,6 +4,7 @@ using TmLab.Measurement;
 using TmLab.Measurement.Bases;
 using TmLab.Numerics.Matrices;
 using TmLab.Quantities;
+using TmLab.Reconstruction.Drift;
 
 namespace TmLab.Reconstruction;
 
@@ -27,14 +28,13 @@ public static class MatrixReconstruction
         CancellationToken cancel)
     {
         IPatternBasis basis = PatternBases.Create(facts.Manifest.Modes, facts.CustomPatterns);
-        SteppedArm arm = facts.Manifest.SteppedArm;
-        DriftFacts drift = settings.RemoveDrift ? TrackerDrift.Follow(reader, facts.Schedule, arm) : TrackerDrift.None(facts.Schedule);
-        ImmutableArray<double> theta = FramePhases.Total(facts.Schedule, arm, drift.FramePhaseRad);
-        var weights = new FrameWeightTable(facts.Schedule, basis, theta);
+        DriftFacts drift = DriftEstimation.Run(reader, facts, settings, cancel);
+        ImmutableArray<double> theta = FramePhases.Total(facts.Schedule, facts.Manifest.SteppedArm, drift);
+        var weights = new FrameWeightTable(facts.Schedule, basis, theta, drift.FrameGain);
         PixelSurvey survey = PixelSurvey.Run(reader, facts, theta, settings, cancel);
         ReferenceIntensity? reference = ReferenceIntensity.Read(reader, facts);
         PixelJudgement pixels = PixelJudgement.Make(survey, reference, settings);
-        var tiles = new TiledRows(reader, basis, weights, pixels.RowScale, settings);
+        var tiles = new TiledRows(reader, basis, weights, [.. facts.DarkCounts], pixels.RowScale, settings);
         double[] rowEnergy = tiles.Run(rows, progress, cancel);
         return MatrixAssessment.Make(facts, basis, weights, drift, survey, pixels, rowEnergy, settings);
     }

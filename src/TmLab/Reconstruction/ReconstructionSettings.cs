@@ -1,10 +1,18 @@
+using TmLab.Matrix;
+
 namespace TmLab.Reconstruction;
 
 /// <summary>Everything that a reconstruction can be told; the defaults stand here and nowhere else. Immutable.</summary>
 public sealed record ReconstructionSettings
 {
-    /// <summary>Whether the phase drift that the trackers show is removed.</summary>
-    public bool RemoveDrift { get; init; } = true;
+    /// <summary>How the phase drift is followed; where a way is not open the next simpler one is taken and a warning says so.</summary>
+    public DriftMethod Drift { get; init; } = DriftMethod.SmoothedPath;
+
+    /// <summary>Number of pixels from which the phases of the frames are found.</summary>
+    public int DriftPixels { get; init; } = 1024;
+
+    /// <summary>Expected spread of the laser power from frame to frame, relative: a weak prior.</summary>
+    public double PowerSpread { get; init; } = 0.02;
 
     /// <summary>A tracker gap of more phase than this, radians, is reported: beyond π the unwrapping would be wrong.</summary>
     public double TrackerGapWarningRad { get; init; } = Math.PI / 2;

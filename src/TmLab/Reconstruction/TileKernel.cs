@@ -40,14 +40,15 @@ internal sealed class TileKernel : IDisposable
     /// <param name="counts">Counts (frame, pixel); <paramref name="stride"/> pixels a frame, a multiple of <see cref="Lanes"/>.</param>
     /// <param name="stride">Pixels from one frame to the next.</param>
     /// <param name="pixels">Pixels in the tile.</param>
+    /// <param name="dark">Dark level of each pixel, counts, <paramref name="stride"/> long and a register more.</param>
     /// <param name="rowScale">One factor a pixel, <paramref name="stride"/> long.</param>
     /// <param name="rows">Takes pixels · modes numbers.</param>
-    public void Run(ReadOnlySpan<ushort> counts, int stride, int pixels, ReadOnlySpan<float> rowScale, Span<Complex64> rows)
+    public void Run(ReadOnlySpan<ushort> counts, int stride, int pixels, ReadOnlySpan<float> dark, ReadOnlySpan<float> rowScale, Span<Complex64> rows)
     {
         for (int first = 0; first < pixels; first += Lanes)
         {
             ModePlanes planes = Planes(_basis.PatternCount);
-            Demodulate(counts[first..], stride, planes);
+            Demodulate(counts[first..], stride, dark.Slice(first, Lanes), planes);
             _basis.Invert(planes);
             int count = Math.Min(Lanes, pixels - first);
             Span<Complex64> target = rows.Slice(first * _basis.ModeCount, count * _basis.ModeCount);
@@ -71,13 +72,18 @@ internal sealed class TileKernel : IDisposable
             rows, Lanes, _planes[0].Slice(0, size), _planes[1].Slice(0, size), _planes[2].Slice(0, size), _planes[3].Slice(0, size));
     }
 
-    private void Demodulate(ReadOnlySpan<ushort> counts, int stride, in ModePlanes planes)
+    private void Demodulate(ReadOnlySpan<ushort> counts, int stride, ReadOnlySpan<float> dark, in ModePlanes planes)
     {
         for (int k = 0; k < planes.Rows; k++)
         {
             int row = _basis.PlaneRow(k);
             WeightedFrameSum.Run(
                 counts, stride, _weights.Frames(k), _weights.Weights(k), planes.RealRow(row), planes.ImaginaryRow(row));
+            if (_weights.DarkWeight[k] != default)
+            {
+                SubtractScaled.Run(planes.RealRow(row), dark, _weights.DarkWeight[k].r);
+                SubtractScaled.Run(planes.ImaginaryRow(row), dark, _weights.DarkWeight[k].i);
+            }
         }
     }
 }

@@ -19,16 +19,18 @@ internal sealed class TiledRows
     private readonly IFrameBlockReader _reader;
     private readonly IPatternBasis _basis;
     private readonly FrameWeightTable _weights;
+    private readonly float[] _dark;
     private readonly float[] _rowScale;
     private readonly ReconstructionSettings _settings;
     private readonly int _pixels;
 
     public TiledRows(
-        IFrameBlockReader reader, IPatternBasis basis, FrameWeightTable weights, float[] rowScale, ReconstructionSettings settings)
+        IFrameBlockReader reader, IPatternBasis basis, FrameWeightTable weights, float[] dark, float[] rowScale, ReconstructionSettings settings)
     {
         _reader = reader;
         _basis = basis;
         _weights = weights;
+        _dark = dark;
         _rowScale = rowScale;
         _settings = settings;
         _pixels = reader.FrameSize.PixelCount;
@@ -76,6 +78,7 @@ internal sealed class TiledRows
         private readonly TileKernel _kernel;
         private readonly NativeBuffer<ushort> _counts;
         private readonly NativeBuffer<Complex64> _rows;
+        private readonly float[] _dark;
         private readonly float[] _scale;
 
         public Workspace(TiledRows owner, int tilePixels)
@@ -85,6 +88,7 @@ internal sealed class TiledRows
             // The kernel reads whole registers: behind the last frame's last pixel stand lanes that nobody looks at.
             _counts = new NativeBuffer<ushort>(((long)owner._reader.FrameCount * tilePixels) + _kernel.Lanes);
             _rows = new NativeBuffer<Complex64>((long)tilePixels * owner._basis.ModeCount);
+            _dark = new float[tilePixels + _kernel.Lanes];
             _scale = new float[tilePixels + _kernel.Lanes];
         }
 
@@ -92,9 +96,10 @@ internal sealed class TiledRows
         {
             int frames = _owner._reader.FrameCount;
             _owner._reader.Read(0, frames, first, count, _counts.Slice(0, frames * count));
+            _owner._dark.AsSpan(first, count).CopyTo(_dark);
             _owner._rowScale.AsSpan(first, count).CopyTo(_scale);
             Span<Complex64> tile = _rows.Slice(0, count * _owner._basis.ModeCount);
-            _kernel.Run(_counts.Slice(0, (frames * count) + _kernel.Lanes), count, count, _scale, tile);
+            _kernel.Run(_counts.Slice(0, (frames * count) + _kernel.Lanes), count, count, _dark, _scale, tile);
             rows.WriteRows(first, tile);
             for (int p = 0; p < count; p++)
             {

@@ -15,7 +15,7 @@ namespace TmLab.Shaping;
 /// <param name="IdealEnhancement">1 + (π/4)(N − 1): the mean for one target in a random medium without noise.</param>
 /// <param name="Cautions">What the user must know before showing it.</param>
 public sealed record FocusMask(
-    PanelImage Image,
+    ModulatorImage Image,
     ImmutableArray<double> PhaseRad,
     int Levels,
     ImmutableArray<TargetPrediction> Targets,
@@ -42,7 +42,7 @@ public sealed record FocusMask(
         (byte Gray, double PhaseRad)[] levels = [.. PhaseConjugation.Phases(rows).Select(scale.Nearest)];
         Complex[] field = [.. levels.Select(l => Complex.FromPolarCoordinates(1, l.PhaseRad))];
         return new FocusMask(
-            PanelImage.Draw(panel, facts.Grid, [.. levels.Select(l => l.Gray)], facts.Flatness),
+            PanelDrawing.Draw(panel, facts.Grid, [.. levels.Select(l => l.Gray)], facts.Flatness),
             [.. levels.Select(l => l.PhaseRad)],
             scale.LevelCount,
             [.. rows.Select(r => TargetPrediction.Make(r, field))],

@@ -50,7 +50,7 @@ public static class DemoMeasurement
         MeanSignalElectrons = 1000,
         Reference = new ReferenceBeam(ReferenceShape.Plane, 4, 0.05, -0.03),
         Camera = new SimulatedCamera { DeadPixelCount = 3 },
-        PhaseDrift = [new RandomWalkDrift(0.7), new LinearDrift(0.35), new SinusoidalDrift(0.25, 0.21, 0.4)],
+        PhaseDrift = [new RandomWalkDrift(0.45), new LinearDrift(0.35), new SinusoidalDrift(0.25, 0.21, 0.4)],
         Power = new PowerDrift(LinearPerSecond: -0.001, WalkPerSqrtSecond: 0.003, FrameNoise: 0.001),
         Steps = new StepError(LinearScale: 0.01),
     };

@@ -47,9 +47,8 @@ internal sealed class Pupil
     /// <summary>Whether every spatial frequency of the region passes, so that white stays white.</summary>
     public bool IsOpen => PointCount == _size.PixelCount;
 
-    /// <summary>A point's place in the rectangle around the pupil, each coordinate in (0, 1).</summary>
-    public (double Y, double X) RelativePosition(int point) =>
-        ((_yOf[point] + 0.5) / RowCount, (_xOf[point] + 0.5) / ColumnCount);
+    /// <summary>A point's row and column in the rectangle around the pupil.</summary>
+    public (int Y, int X) PlaceInRectangle(int point) => (_yOf[point], _xOf[point]);
 
     /// <summary>The pupil that gives a camera region a speckle grain.</summary>
     public static Pupil Create(ImageSize size, SpeckleGrain grain)

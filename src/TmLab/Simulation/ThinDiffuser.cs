@@ -1,5 +1,4 @@
 using TmLab.Numerics;
-using TmLab.Quantities;
 
 namespace TmLab.Simulation;
 
@@ -26,12 +25,18 @@ public sealed record ThinDiffuser(double ThicknessMacroPixels) : Medium
         MediumShape shape, RandomStreams streams, int realisation, ParallelOptions options, FieldPlanes target)
     {
         Preconditions.InRange(ThicknessMacroPixels, 0.5, 1000);
+        double[][] alongY = SpreadAlong(shape.Grid.Rows, shape.Pupil.RowCount);
+        double[][] alongX = SpreadAlong(shape.Grid.Columns, shape.Pupil.ColumnCount);
         double[] meanSquares = new double[target.Rows];
-        Parallel.For(0, target.Rows, options, mode => meanSquares[mode] = DrawRow(shape, streams, realisation, target, mode));
+        Parallel.For(0, target.Rows, options, mode =>
+        {
+            (int row, int column) = Math.DivRem(mode, shape.Grid.Columns);
+            meanSquares[mode] = DrawRow(shape.Pupil, alongY[row], alongX[column], streams, realisation, target, mode);
+        });
         return meanSquares.Sum() / target.Rows;
     }
 
-    /// <summary>Share of the light that leaves a macro-pixels' width at distance x from where it entered.</summary>
+    /// <summary>P(x): the share of light, per macro-pixel's width, that leaves at distance x along one axis from where it entered.</summary>
     internal double Spread(double xMacroPixels)
     {
         double e = PortableMath.Exp(-Math.Min(Math.Abs(xMacroPixels) * Math.PI / (2 * ThicknessMacroPixels), 300));
@@ -39,26 +44,29 @@ public sealed record ThinDiffuser(double ThicknessMacroPixels) : Medium
         return Math.PI / (4 * ThicknessMacroPixels) * sech * sech;
     }
 
-    private double DrawRow(MediumShape shape, RandomStreams streams, int realisation, FieldPlanes target, int mode)
+    private static double DrawRow(
+        Pupil pupil, double[] alongY, double[] alongX, RandomStreams streams, int realisation, FieldPlanes target, int mode)
     {
         double sum = 0;
-        for (int point = 0; point < target.Columns; point++)
+        Span<float> re = target.Real(mode);
+        Span<float> im = target.Imaginary(mode);
+        for (int point = 0; point < re.Length; point++)
         {
-            double power = SpreadBetween(shape, mode, point);
-            (double re, double im) = streams.ComplexNormal(RandomPurpose.Medium, mode, point, realisation);
-            target.Real(mode)[point] = (float)(re * Math.Sqrt(power));
-            target.Imaginary(mode)[point] = (float)(im * Math.Sqrt(power));
+            (int y, int x) = pupil.PlaceInRectangle(point);
+            double power = alongY[y] * alongX[x];
+            double amplitude = Math.Sqrt(power);
+            (double a, double b) = streams.ComplexNormal(RandomPurpose.Medium, mode, point, realisation);
+            (re[point], im[point]) = ((float)(a * amplitude), (float)(b * amplitude));
             sum += power;
         }
 
-        return sum / target.Columns;
+        return sum / re.Length;
     }
 
-    private double SpreadBetween(MediumShape shape, int mode, int point)
-    {
-        GridShape grid = shape.Grid;
-        (double y, double x) = shape.Pupil.RelativePosition(point);
-        (int row, int column) = Math.DivRem(mode, grid.Columns);
-        return Spread((y * grid.Rows) - (row + 0.5)) * Spread((x * grid.Columns) - (column + 0.5));
-    }
+    /// <summary>Spread from each macro-pixel's centre (first index) to each of the pupil's points (second index) along one axis.</summary>
+    private double[][] SpreadAlong(int macroPixels, int points) =>
+    [
+        .. Enumerable.Range(0, macroPixels).Select(n => Enumerable.Range(0, points)
+            .Select(k => Spread(((k + 0.5) / points * macroPixels) - (n + 0.5))).ToArray()),
+    ];
 }

@@ -3,6 +3,7 @@ using TmLab.Cli.Options;
 using TmLab.EndToEndTests.Running;
 using TmLab.Quantities;
 using Xunit;
+using TmLab.Numerics.LinearAlgebra;
 
 namespace TmLab.EndToEndTests.InProcess;
 

@@ -175,7 +175,6 @@ public sealed class RoundTripTests
         Assert.Equal([3L, 2L, 4L], counts.Shape);
         Assert.Equal(("uint16", "count"), (counts.ElementType, counts.Units));
         Assert.Equal("complex128", Assert.Single(description.Datasets, d => d.Path == "/modes/custom_patterns").ElementType);
-        Assert.Equal("text", Assert.Single(description.Datasets, d => d.Path == "/manifest").ElementType);
     }
 
     private static void RequireCounts(MeasurementFileReader reader, int firstFrame, int frames, int firstPixel, int pixels)

@@ -51,7 +51,7 @@ public sealed class MatrixReconstructionTests
         static double Drift(ScheduledFrame f) => 0.02 * f.TimeS;
         var bench = new ExactBench(Modes(BasisKind.Hadamard), WithTrackers(16, 4, every: 4), Size, 4, driftRad: Drift);
         (InMemoryMatrix matrix, TransmissionMatrixFacts facts) = Reconstruct(bench, new ReconstructionSettings());
-        (InMemoryMatrix drifting, TransmissionMatrixFacts without) = Reconstruct(bench, new ReconstructionSettings { RemoveDrift = false });
+        (InMemoryMatrix drifting, TransmissionMatrixFacts without) = Reconstruct(bench, new ReconstructionSettings { Drift = DriftMethod.None });
         Assert.True(bench.Fidelity(matrix, facts) > 0.999);
         Assert.True(bench.Fidelity(drifting, without) < 0.9);
         Assert.Equal(DriftMethod.TrackersInterpolated, facts.Drift.Method);

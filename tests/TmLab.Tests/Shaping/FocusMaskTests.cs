@@ -28,7 +28,7 @@ public sealed class FocusMaskTests
                 bool inside = x is >= 10 and < 90 && y is >= 4 and < 84;
                 int n = inside ? ((y - 4) / 10 * 8) + ((x - 10) / 10) : -1;
                 int expected = inside ? (int)Math.Round(Turn(-matrix.Row((3 * 6) + 2)[n].ToComplex().Phase) * 256) % 256 : 0;
-                Assert.Equal(expected, mask.Image.Gray[(y * 120) + x]);
+                Assert.Equal(expected, mask.Image.Levels[(y * 120) + x]);
             }
         }
     }
@@ -41,7 +41,7 @@ public sealed class FocusMaskTests
         ImmutableArray<FocusTarget> targets = [new FocusTarget(new CameraPixel(0, 0))];
         FocusMask plain = FocusMask.Make(matrix, Facts(), "t.h5", targets);
         FocusMask flat = FocusMask.Make(matrix, Facts() with { Flatness = flatness }, "t.h5", targets);
-        Assert.Equal(plain.Image.Gray.Select((g, i) => (byte)(g + flatness[i])), flat.Image.Gray);
+        Assert.Equal(plain.Image.Levels.Select((g, i) => (byte)(g + flatness[i])), flat.Image.Levels);
     }
 
     // 1 + (π/4)(N − 1) sinc²(1/L): Vellekoop & Mosk, Opt. Lett. 32, 2309 (2007) for the phase-only mean; the level factor from
@@ -187,6 +187,6 @@ public sealed class FocusMaskTests
             [.. new float[24]],
             [.. Enumerable.Repeat(noiseRms, 24)]),
         new ModeFacts([.. Enumerable.Repeat(true, 64)], [.. new float[64]]),
-        new DriftFacts(DriftMethod.None, [], [], [], []),
+        DriftFacts.None(0),
         new MatrixQuality(0.5, 100, 24, 64, false, []));
 }

@@ -114,7 +114,7 @@ public sealed class CameraModelTests
         ushort[] without = Benches.Frame(clean, place);
         for (int p = 0; p < with.Length; p++)
         {
-            bool inside = p % 16 is >= 3 and < 9 && p / 16 is 5 or 6 && p % 16 is >= 3 and < 9;
+            bool inside = p % 16 is >= 3 and < 9 && p / 16 is (5 or 6);
             // A full well of 30,000 electrons at 7.5 a count, plus the offset of 64: 4064 counts.
             Assert.True(inside ? with[p] >= 4060 : with[p] == without[p]);
         }

@@ -65,16 +65,18 @@ public sealed class MediaTests
         // C(q) = [qL / sinh qL]² (Feng, Kane, Lee, Stone, Phys. Rev. Lett. 61, 834 (1988)); ½ at qL = 1.49143.
         const int Columns = 64;
         const double Thickness = 2;
-        foreach (int shift in (int[])[1, 3, 5, 8, 12])
+        int[] shifts = [0, 1, 3, 5, 8, 12];
+        double[] q = [.. shifts.Select(shift => 2 * Math.PI * shift / Columns)];
+        double[] measured = TiltCorrelations(new ThinDiffuser(Thickness), Columns, q, shifts);
+        Assert.Equal(1, measured[0], 1e-9);
+        for (int i = 1; i < shifts.Length; i++)
         {
-            double q = 2 * Math.PI * shift / Columns;
-            double formula = Math.Pow(q * Thickness / Math.Sinh(q * Thickness), 2);
-            double ofGrid = Math.Pow(GridCorrelation(new ThinDiffuser(Thickness), Columns, q), 2);
+            double formula = Math.Pow(q[i] * Thickness / Math.Sinh(q[i] * Thickness), 2);
+            double ofGrid = Math.Pow(GridCorrelation(new ThinDiffuser(Thickness), Columns, q[i]), 2);
             // The envelope is cut at the edges of the grid: two ends of about L of 64 macro-pixels.
             Assert.InRange(ofGrid, formula - (2 * Thickness / Columns), formula + (2 * Thickness / Columns));
-            double measured = TiltCorrelation(new ThinDiffuser(Thickness), Columns, q, shift);
             // The overlap of 16 × 512 independent speckles has a standard error near 1/√8192.
-            Assert.InRange(Math.Sqrt(measured), Math.Sqrt(ofGrid) - (4 / Math.Sqrt(8192)), Math.Sqrt(ofGrid) + (4 / Math.Sqrt(8192)));
+            Assert.InRange(Math.Sqrt(measured[i]), Math.Sqrt(ofGrid) - (4 / Math.Sqrt(8192)), Math.Sqrt(ofGrid) + (4 / Math.Sqrt(8192)));
         }
     }
 
@@ -120,11 +122,23 @@ public sealed class MediaTests
         {
             for (int j = 0; j < t.Columns; j++)
             {
-                w[i, j] = Enumerable.Range(0, t.Rows).Aggregate(Complex.Zero, (sum, p) => sum + (Complex.Conjugate(t[p, i]) * t[p, j])) / scale;
+                w[i, j] = Product(t, i, j) / scale;
             }
         }
 
         return w;
+    }
+
+    private static Complex Product(ComplexMatrix t, int i, int j)
+    {
+        Complex sum = 0;
+        for (int p = 0; p < t.Rows; p++)
+        {
+            Span<Complex64> row = t.Row(p);
+            sum += Complex.Conjugate(row[i]) * row[j];
+        }
+
+        return sum;
     }
 
     private static double Trace(Complex[,] w) => Enumerable.Range(0, w.GetLength(0)).Sum(i => w[i, i].Real);
@@ -159,40 +173,41 @@ public sealed class MediaTests
     {
         double sum = 0;
         double norm = 0;
-        for (int k = 0; k < columns; k++)
+        for (int distance = 1 - columns; distance < columns; distance++)
         {
-            for (int n = 0; n < columns; n++)
-            {
-                sum += diffuser.Spread(n - k) * Math.Cos(q * (n - k));
-                norm += diffuser.Spread(n - k);
-            }
+            double weight = (columns - Math.Abs(distance)) * diffuser.Spread(distance);
+            sum += weight * Math.Cos(q * distance);
+            norm += weight;
         }
 
         return sum / norm;
     }
 
-    /// <summary>|⟨E₀(p + shift)* E_q(p)⟩|² over its norms, from sixteen diffusers.</summary>
-    private static double TiltCorrelation(ThinDiffuser diffuser, int columns, double q, int shift)
+    /// <summary>|⟨E₀(p + shift)* E_q(p)⟩|² over its norms for several tilts, from sixteen diffusers.</summary>
+    private static double[] TiltCorrelations(ThinDiffuser diffuser, int columns, double[] q, int[] shifts)
     {
-        Complex overlap = 0;
-        double flatPower = 0;
-        double tiltedPower = 0;
+        var overlap = new Complex[q.Length];
+        var flatPower = new double[q.Length];
+        var tiltedPower = new double[q.Length];
         for (ulong seed = 1; seed <= 16; seed++)
         {
-            (Complex[] flat, Complex[] tilted) = TwoTilts(diffuser, columns, q, seed);
-            for (int p = 0; p < flat.Length; p++)
+            Complex[][] fields = TiltedFields(diffuser, columns, q, seed);
+            for (int i = 0; i < q.Length; i++)
             {
-                Complex moved = flat[(p / columns * columns) + ((p + shift) % columns)];
-                overlap += Complex.Conjugate(moved) * tilted[p];
-                flatPower += moved.Magnitude * moved.Magnitude;
-                tiltedPower += tilted[p].Magnitude * tilted[p].Magnitude;
+                for (int p = 0; p < fields[i].Length; p++)
+                {
+                    Complex moved = fields[0][(p / columns * columns) + ((p + shifts[i]) % columns)];
+                    overlap[i] += Complex.Conjugate(moved) * fields[i][p];
+                    flatPower[i] += moved.Magnitude * moved.Magnitude;
+                    tiltedPower[i] += fields[i][p].Magnitude * fields[i][p].Magnitude;
+                }
             }
         }
 
-        return overlap.Magnitude * overlap.Magnitude / (flatPower * tiltedPower);
+        return [.. overlap.Select((o, i) => o.Magnitude * o.Magnitude / (flatPower[i] * tiltedPower[i]))];
     }
 
-    private static (Complex[] Flat, Complex[] Tilted) TwoTilts(ThinDiffuser diffuser, int columns, double q, ulong seed)
+    private static Complex[][] TiltedFields(ThinDiffuser diffuser, int columns, double[] q, ulong seed)
     {
         MeasurementManifest manifest = Benches.Manifest(8, 4);
         manifest = manifest with
@@ -202,18 +217,21 @@ public sealed class MediaTests
         };
         BenchSettings settings = new() { Medium = diffuser, Seed = seed };
         using VirtualBench bench = Benches.Create(settings, manifest, Benches.Plain(FrameRole.Blank, 1));
-        Complex[] ramp = [.. Enumerable.Range(0, 4 * columns).Select(n => Complex.FromPolarCoordinates(1, q * (n % columns)))];
-        return (Field(bench.Truth.Matrix, _ => 1), Field(bench.Truth.Matrix, n => ramp[n]));
+        return [.. q.Select(tilt => Field(bench.Truth.Matrix, Ramp(4 * columns, columns, tilt)))];
     }
 
-    private static Complex[] Field(ComplexMatrix matrix, Func<int, Complex> input)
+    private static Complex[] Ramp(int modes, int columns, double q) =>
+        [.. Enumerable.Range(0, modes).Select(n => Complex.FromPolarCoordinates(1, q * (n % columns)))];
+
+    private static Complex[] Field(ComplexMatrix matrix, Complex[] input)
     {
         var field = new Complex[matrix.Rows];
         for (int p = 0; p < field.Length; p++)
         {
-            for (int n = 0; n < matrix.Columns; n++)
+            Span<Complex64> row = matrix.Row(p);
+            for (int n = 0; n < row.Length; n++)
             {
-                field[p] += matrix[p, n] * input(n);
+                field[p] += row[n] * input[n];
             }
         }
 

@@ -107,10 +107,12 @@ public sealed class SpeckleTests
         for (int p = 0; p < matrix.Rows; p++)
         {
             int q = (p / Side * Side) + ((p + lag) % Side);
-            for (int n = 0; n < matrix.Columns; n++)
+            Span<Complex64> here = matrix.Row(p);
+            Span<Complex64> there = matrix.Row(q);
+            for (int n = 0; n < here.Length; n++)
             {
-                Complex64 a = matrix[p, n];
-                Complex64 b = matrix[q, n];
+                Complex64 a = here[n];
+                Complex64 b = there[n];
                 re += (a.r * b.r) + (a.i * b.i);
                 im += (a.r * b.i) - (a.i * b.r);
                 product += (double)a.SquaredMagnitude * b.SquaredMagnitude;

@@ -3,7 +3,7 @@ using TmLab.Measurement;
 using TmLab.Numerics.Kernels;
 using TmLab.Numerics.Matrices;
 
-namespace TmLab.Reconstruction;
+namespace TmLab.Reconstruction.Drift;
 
 /// <summary>The demodulated field D = R* E of one group over the whole camera region.</summary>
 internal sealed class DemodulatedField

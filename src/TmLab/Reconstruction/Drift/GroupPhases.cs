@@ -84,11 +84,11 @@ internal sealed class GroupPhases
     private CoherenceModel? FitModel(double[]? variance, CancellationToken cancel)
     {
         var backgrounds = new double[Fits.Length][];
-        ForEachGroup(cancel, k =>
+        ForEachGroup(k =>
         {
             backgrounds[k] = new double[_sample.Count];
             Fits[k].FitFields(backgrounds[k]);
-        });
+        }, cancel);
         int pixels = _sample.Count;
         (double[] alpha, double[] beta, double[] spread) = (new double[pixels], new double[pixels], new double[pixels]);
         Parallel.For(0, pixels, Options(cancel), p =>
@@ -106,11 +106,11 @@ internal sealed class GroupPhases
     private double[] ImproveAll(CoherenceModel model, CancellationToken cancel)
     {
         var residuals = new double[Fits.Length][];
-        ForEachGroup(cancel, k =>
+        ForEachGroup(k =>
         {
             residuals[k] = new double[_sample.Count];
             Fits[k].Improve(model, _settings.PowerSpread, residuals[k]);
-        });
+        }, cancel);
         var variance = new double[_sample.Count];
         for (int p = 0; p < variance.Length; p++)
         {
@@ -128,7 +128,7 @@ internal sealed class GroupPhases
         return variance;
     }
 
-    private void ForEachGroup(CancellationToken cancel, Action<int> action) => Parallel.For(0, Fits.Length, Options(cancel), action);
+    private void ForEachGroup(Action<int> action, CancellationToken cancel) => Parallel.For(0, Fits.Length, Options(cancel), action);
 
     private ParallelOptions Options(CancellationToken cancel) =>
         new() { MaxDegreeOfParallelism = _settings.Threads, CancellationToken = cancel };

@@ -3,7 +3,7 @@ using System.Numerics;
 using TmLab.Matrix;
 using TmLab.Measurement;
 
-namespace TmLab.Reconstruction;
+namespace TmLab.Reconstruction.Drift;
 
 /// <summary>
 /// The phase drift from the trackers: D of each tracker is that of the first times e^{iφ} (and whatever else changed), so
@@ -20,10 +20,11 @@ public static class TrackerDrift
         ImmutableArray<StepGroup> trackers = OfMostShownPattern(schedule);
         if (trackers.Length < 2)
         {
-            return None(schedule);
+            return DriftFacts.None(schedule.Frames.Length);
         }
 
-        ImmutableArray<double> commanded = FramePhases.Total(schedule, arm, Zeros(schedule));
+        DriftFacts nothing = DriftFacts.None(schedule.Frames.Length);
+        ImmutableArray<double> commanded = FramePhases.Total(schedule, arm, nothing);
         (Complex[] overlaps, double[] energies) = Overlaps(reader, trackers, commanded);
         double[] times = [.. trackers.Select(t => t.Frames.Average(f => schedule.Frames[f].TimeS))];
         double[] phases = Unwrap(overlaps);
@@ -32,13 +33,12 @@ public static class TrackerDrift
             [.. times],
             [.. phases],
             [.. overlaps.Select((o, k) => Similarity(o, energies[0], energies[k]))],
-            [.. schedule.Frames.Select(f => Interpolate(times, phases, f.TimeS))]);
+            [.. schedule.Frames.Select(f => TimeInterpolation.Linear(times, phases, f.TimeS))],
+            nothing.FramePhaseSdRad,
+            [],
+            nothing.FrameGain,
+            double.NaN);
     }
-
-    /// <summary>No drift removed.</summary>
-    public static DriftFacts None(Schedule schedule) => new(DriftMethod.None, [], [], [], Zeros(schedule));
-
-    private static ImmutableArray<double> Zeros(Schedule schedule) => [.. new double[schedule.Frames.Length]];
 
     // Different patterns have no common phase, so one pattern is followed: the one shown most often.
     private static ImmutableArray<StepGroup> OfMostShownPattern(Schedule schedule) =>
@@ -73,16 +73,4 @@ public static class TrackerDrift
 
     private static double Similarity(Complex overlap, double energyA, double energyB) =>
         ((overlap.Real * overlap.Real) + (overlap.Imaginary * overlap.Imaginary)) / (energyA * energyB);
-
-    private static double Interpolate(double[] times, double[] phases, double time)
-    {
-        int above = Array.FindIndex(times, t => t > time);
-        if (above <= 0)
-        {
-            return above == 0 ? phases[0] : phases[^1];
-        }
-
-        double share = (time - times[above - 1]) / (times[above] - times[above - 1]);
-        return phases[above - 1] + (share * (phases[above] - phases[above - 1]));
-    }
 }

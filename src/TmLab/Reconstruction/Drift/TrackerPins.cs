@@ -1,6 +1,5 @@
 using System.Collections.Immutable;
 using System.Numerics;
-using TmLab.Matrix;
 using TmLab.Measurement;
 
 namespace TmLab.Reconstruction.Drift;

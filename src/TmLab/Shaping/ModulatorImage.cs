@@ -2,7 +2,7 @@ using System.Collections.Immutable;
 using TmLab.Numerics;
 using TmLab.Quantities;
 
-namespace TmLab.Storage.Images;
+namespace TmLab.Shaping;
 
 /// <summary>The depth of a modulator image.</summary>
 public enum ModulatorImageDepth

@@ -5,10 +5,8 @@ using TmLab.Quantities;
 
 namespace TmLab.Shaping;
 
-/// <summary>An 8-bit image of a panel's native size, one number a panel pixel, row-major. Immutable.</summary>
-/// <param name="Size">The panel's size.</param>
-/// <param name="Gray">Grey levels.</param>
-public sealed record PanelImage(ImageSize Size, ImmutableArray<byte> Gray)
+/// <summary>From one grey level a macro-pixel to the image that the panel shows.</summary>
+public static class PanelDrawing
 {
     /// <summary>
     /// Draws macro-pixels on a panel: the region is divided into the grid's cells as evenly as whole pixels allow, each cell filled
@@ -18,7 +16,7 @@ public sealed record PanelImage(ImageSize Size, ImmutableArray<byte> Gray)
     /// <param name="grid">The grid.</param>
     /// <param name="levels">One grey level a macro-pixel, row-major over the grid.</param>
     /// <param name="flatness">Native size, or empty.</param>
-    public static PanelImage Draw(
+    public static ModulatorImage Draw(
         ModulatorDescription panel, GridShape grid, ImmutableArray<byte> levels, ImmutableArray<byte> flatness)
     {
         Preconditions.SameLength(levels.Length, grid.Count);
@@ -39,6 +37,6 @@ public sealed record PanelImage(ImageSize Size, ImmutableArray<byte> Gray)
             image[i] += flatness[i];
         }
 
-        return new PanelImage(panel.Size, [.. image]);
+        return new ModulatorImage(panel.Size, [.. image]);
     }
 }

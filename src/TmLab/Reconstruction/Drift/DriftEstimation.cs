@@ -1,0 +1,51 @@
+using System.Collections.Immutable;
+using TmLab.Matrix;
+using TmLab.Measurement;
+
+namespace TmLab.Reconstruction.Drift;
+
+/// <summary>Chooses how the drift is followed and follows it.</summary>
+public static class DriftEstimation
+{
+    /// <summary>
+    /// The way asked for, or the next simpler one that the measurement allows: the smoothed path wants eight groups and usable pixels,
+    /// interpolation two trackers.
+    /// </summary>
+    /// <param name="reader">The counts.</param>
+    /// <param name="facts">All else of the measurement.</param>
+    /// <param name="settings">The way asked for, pixels, threads.</param>
+    /// <param name="cancel">Stops the work.</param>
+    public static DriftFacts Run(
+        IFrameBlockReader reader, MeasurementFacts facts, ReconstructionSettings settings, CancellationToken cancel) =>
+        settings.Drift switch
+        {
+            DriftMethod.None => DriftFacts.None(reader.FrameCount),
+            DriftMethod.TrackersInterpolated => TrackerDrift.Follow(reader, facts.Schedule, facts.Manifest.SteppedArm),
+            _ => Smoothed(reader, facts, settings, cancel) ?? TrackerDrift.Follow(reader, facts.Schedule, facts.Manifest.SteppedArm),
+        };
+
+    private static DriftFacts? Smoothed(
+        IFrameBlockReader reader, MeasurementFacts facts, ReconstructionSettings settings, CancellationToken cancel)
+    {
+        ImmutableArray<double> commanded = FramePhases.Commanded(facts.Schedule, facts.Manifest.SteppedArm);
+        PixelSample sample = PixelSample.Read(reader, facts, settings);
+        if (GroupPhases.Find(facts.Schedule, commanded, sample, settings, cancel) is not GroupPhases phases)
+        {
+            return null;
+        }
+
+        ImmutableArray<TrackerPin> pins = TrackerPins.Find(facts.Schedule, phases, commanded);
+        var solver = new DriftPathSolver(facts.Schedule, phases, commanded, pins);
+        DriftPath path = solver.Solve(solver.EstimateWalkRate());
+        return new DriftFacts(
+            DriftMethod.SmoothedPath,
+            [.. pins.Select(p => p.TimeS)],
+            [.. pins.Select(p => p.OffsetRad)],
+            [.. pins.Select(p => p.Similarity)],
+            path.PhaseRad,
+            path.StandardDeviationRad,
+            path.StepErrorRad,
+            PowerDrift.Gains(reader.FrameCount, phases),
+            path.WalkRateRad2PerS);
+    }
+}

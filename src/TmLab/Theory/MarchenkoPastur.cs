@@ -88,7 +88,7 @@ public sealed class MarchenkoPastur
     /// <summary>F(s²), the probability of a singular value of at most s.</summary>
     public double SingularValueCumulative(double s) => s < 0 ? 0 : Cumulative(s * s);
 
-    /// <summary>The smallest x with F(x) ≥ p, by Newton's iteration kept within a bracket; error below 10⁻¹⁰.</summary>
+    /// <summary>The smallest x with F(x) ≥ p, by Newton's iteration kept within a bracket; error below 10⁻¹⁰ for 10⁻⁶ ≤ p ≤ 1 − 10⁻⁶.</summary>
     /// <param name="probability">p in [0, 1].</param>
     /// <exception cref="ArgumentOutOfRangeException">p is not in that range.</exception>
     public double Quantile(double probability)
@@ -99,18 +99,24 @@ public sealed class MarchenkoPastur
             return AtomAtZero > 0 ? 0 : LowerEdge;
         }
 
+        if (probability == 1)
+        {
+            return UpperEdge;
+        }
+
         // Singular values: near γ = 1 the density of x is infinite at 0 while that of s is bounded, so that Newton's steps are tame.
         double low = Math.Sqrt(LowerEdge), high = Math.Sqrt(UpperEdge), s = (low + high) / 2;
-        for (int iteration = 0; iteration < IterationsAtMost && high - low > QuantileTolerance * high; iteration++)
+        for (int iteration = 0; iteration < IterationsAtMost; iteration++)
         {
             double excess = SingularValueCumulative(s) - probability;
             (low, high) = excess < 0 ? (s, high) : (low, s);
-            double step = s - (excess / SingularValueDensity(s));
-            s = step > low && step < high ? step : (low + high) / 2;
-            if (Math.Abs(excess) < 1e-16)
+            double step = excess / SingularValueDensity(s), next = s - step;
+            if (Math.Abs(step) <= QuantileTolerance * s || high - low <= QuantileTolerance * high)
             {
                 break;
             }
+
+            s = next > low && next < high ? next : (low + high) / 2;
         }
 
         return s * s;
@@ -139,7 +145,7 @@ public sealed class MarchenkoPastur
 
     /// <summary>
     /// ⟨√x⟩, the mean normalised singular value: ∫ √((b − s²)(s² − a)) ds / (πγ), by the trapezium rule in θ of
-    /// s = mid − half · cos θ, which converges faster than any power because the integrand is smooth and periodic in θ.
+    /// s = mid − half · cos θ, where the integrand is periodic: error below 10⁻¹¹ at γ = 1, rounding elsewhere.
     /// </summary>
     public double MeanSingularValue()
     {

@@ -95,7 +95,7 @@ internal sealed class SpectrumLadder
         return new SpectrumOutcome([.. values], method, condition, error, [], _passes);
     }
 
-    private static double[] Roots(double[] eigenvalues) => [.. eigenvalues.Select(value => Math.Sqrt(Math.Max(0, value)))];
+    private static double[] Roots(IEnumerable<double> eigenvalues) => [.. eigenvalues.Select(value => Math.Sqrt(Math.Max(0, value)))];
 
     private (double[] Values, Complex128Matrix? Adjoint) GramVectors(Complex128Matrix gram, int count)
     {
@@ -112,7 +112,7 @@ internal sealed class SpectrumLadder
             svd.VectorsAdjoint.Row(row).CopyTo(adjoint.Row(row));
         }
 
-        return (svd.Values[..count], adjoint);
+        return ([.. svd.Values[..count]], adjoint);
     }
 
     // Null when the numbers' range is not that of single-precision squares.

@@ -84,11 +84,11 @@ internal sealed unsafe class ManagedEngine : ILinearAlgebraEngine
         int[] order = DescendingOrder(norms);
         using Complex128Matrix left = Rows(rotations, order, null);
         using Complex128Matrix right = Rows(rows, order, norms);
-        OrthonormalRows.Complete(right, [.. order.Select(j => norms[j])]);
         double[] values = [.. order.Select(j => norms[j])];
+        OrthonormalRows.Complete(right, values);
         return tall
-            ? new ThinSvd(OrthonormalRows.Adjoint(right), values, left.Copy())
-            : new ThinSvd(OrthonormalRows.Adjoint(left), values, right.Copy());
+            ? new ThinSvd(OrthonormalRows.Adjoint(right), [.. values], left.Copy())
+            : new ThinSvd(OrthonormalRows.Adjoint(left), [.. values], right.Copy());
     }
 
     public void TriangularFactor(Complex128Matrix matrix, int rows)

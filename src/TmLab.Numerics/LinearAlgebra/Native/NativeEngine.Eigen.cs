@@ -50,7 +50,7 @@ internal sealed unsafe partial class NativeEngine
             ascendingRows.Row(from).CopyTo(rows.Row(j));
         }
 
-        return new HermitianEigen(values, rows);
+        return new HermitianEigen([.. values], rows);
     }
 
     private double[] DivideAndConquer(Complex128Matrix matrix, byte job)

@@ -20,7 +20,7 @@ internal sealed unsafe partial class NativeEngine
         int k = Math.Min(matrix.Rows, matrix.Columns);
         var u = new Complex128Matrix(matrix.Rows, k);
         var adjoint = new Complex128Matrix(k, matrix.Columns);
-        return new ThinSvd(u, Decompose(matrix, u, adjoint, (byte)'S'), adjoint);
+        return new ThinSvd(u, [.. Decompose(matrix, u, adjoint, (byte)'S')], adjoint);
     }
 
     // A = Q R row-major is Aᵀ = Rᵀ Qᵀ column-major: an LQ factorisation, whose L stands where R's upper triangle is wanted.

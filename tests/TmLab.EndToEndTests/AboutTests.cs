@@ -1,5 +1,6 @@
 using System.Text.Json;
 using TmLab.EndToEndTests.Running;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.EndToEndTests;

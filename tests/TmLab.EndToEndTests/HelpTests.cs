@@ -1,4 +1,5 @@
 using TmLab.EndToEndTests.Running;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.EndToEndTests;

@@ -1,4 +1,5 @@
 using TmLab.EndToEndTests.Running;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.EndToEndTests;
@@ -43,14 +44,14 @@ public sealed class UsageTests
         Assert.Equal("", result.Stdout);
         Assert.Contains(expected, result.Stderr, StringComparison.Ordinal);
         Assert.Contains("--help' lists what can be given.", result.ErrorLines[^1], StringComparison.Ordinal);
-        Assert.Empty(folder.Entries);
+        Assert.Empty(FolderTree.Entries(folder.Path));
     }
 
     [Fact]
     public void A_word_that_begins_with_at_is_a_file_name_and_not_a_file_of_words()
     {
         using var folder = new TemporaryFolder();
-        File.WriteAllText(folder.Combine("words"), "about\n");
+        File.WriteAllText(folder.File("words"), "about\n");
 
         ToolResult result = Tool.Run(folder, "@words");
 

@@ -12,6 +12,8 @@ internal sealed record Failure(ExitCode ExitCode, ImmutableArray<string> Lines, 
     {
         OperationCanceledException e => new(ExitCode.Interrupted, ["interrupted; no output was changed by the stage that was running"], e),
         BadInputException e => new(ExitCode.BadInput, [.. e.Problems.Select(p => p.ToString())], e),
+        OutputException { Failure: OutputFailure.Exists } e when !Directory.Exists(e.File) =>
+            new(ExitCode.Output, [$"{e.File}: already exists; give another name or --force"], e),
         OutputException e => new(ExitCode.Output, [OneLine(e.Message)], e),
         TmLabException e => new(ExitCode.Failed, [OneLine(e.Message)], e),
         OutOfMemoryException e => new(ExitCode.Failed, ["not enough memory; give a smaller --memory or use a larger machine"], e),

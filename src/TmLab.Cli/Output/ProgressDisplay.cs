@@ -15,6 +15,9 @@ internal sealed class ProgressDisplay(MessageChannel messages, TimeProvider cloc
     /// <summary>Time between two redrawings on a terminal.</summary>
     public static readonly TimeSpan RedrawInterval = TimeSpan.FromMilliseconds(100);
 
+    /// <summary>A rate from less time than this says nothing.</summary>
+    private static readonly TimeSpan ShortestForRate = TimeSpan.FromMilliseconds(300);
+
     private readonly Lock _lock = new();
     private readonly TimeSpan _interval = messages.IsTerminal ? RedrawInterval : PlainInterval;
     private long _lastShown = clock.GetTimestamp();
@@ -27,7 +30,8 @@ internal sealed class ProgressDisplay(MessageChannel messages, TimeProvider cloc
         lock (_lock)
         {
             NoticeActivity(value.Activity);
-            if (clock.GetElapsedTime(_lastShown) < _interval)
+            bool lasts = !messages.IsTerminal;
+            if (clock.GetElapsedTime(_lastShown) < _interval || (lasts && value.Done >= value.Total))
             {
                 return;
             }
@@ -45,7 +49,7 @@ internal sealed class ProgressDisplay(MessageChannel messages, TimeProvider cloc
         double share = value.Total > 0 ? Math.Clamp((double)value.Done / value.Total, 0, 1) : 0;
         string line = string.Create(
             CultureInfo.InvariantCulture, $"{value.Activity}: {Math.Floor(100 * share):0} %, {value.Done:N0} of {value.Total:N0} {value.Unit}");
-        if (value.Done <= 0 || elapsed <= TimeSpan.Zero)
+        if (value.Done <= 0 || elapsed < ShortestForRate)
         {
             return line;
         }

@@ -11,6 +11,16 @@ internal sealed class TextReport(TextWriter output)
 
     public void Row(string label, string value) => output.WriteLine($"  {label.PadRight(LabelWidth)} {value}");
 
+    /// <summary>Rows aligned on the longest of their labels.</summary>
+    public void Rows(IReadOnlyCollection<(string Label, string Value)> rows)
+    {
+        int width = rows.Select(r => r.Label.Length).DefaultIfEmpty(0).Max();
+        foreach ((string label, string value) in rows)
+        {
+            output.WriteLine($"  {label.PadRight(width)} {value}");
+        }
+    }
+
     public void Row(string label, double value, string unit = "") => Row(label, Figure(value, unit));
 
     public void Line(string text) => output.WriteLine(text);

@@ -16,6 +16,9 @@ internal sealed record ReconstructReport(
     double DriftRangeRad,
     double LargestTrackerGapRad,
     double SmallestTrackerOverlap,
+    double WalkRateRad2PerS,
+    double LargestStepErrorRad,
+    double PowerSpread,
     double MeanVisibility,
     double SignalToNoise,
     bool RowsNormalised,
@@ -35,6 +38,9 @@ internal sealed record ReconstructReport(
         facts.Drift.TrackerPhaseRad.DefaultIfEmpty(double.NaN).Max() - facts.Drift.TrackerPhaseRad.DefaultIfEmpty(double.NaN).Min(),
         facts.Drift.LargestGapRad,
         facts.Drift.TrackerOverlap.DefaultIfEmpty(double.NaN).Min(),
+        facts.Drift.WalkRateRad2PerS,
+        facts.Drift.StepErrorRad.Select(Math.Abs).DefaultIfEmpty(double.NaN).Max(),
+        facts.Drift.FrameGain.DefaultIfEmpty(double.NaN).Max() - facts.Drift.FrameGain.DefaultIfEmpty(double.NaN).Min(),
         facts.Quality.MeanVisibility,
         facts.Quality.SignalToNoise,
         facts.Quality.RowsNormalised,
@@ -58,12 +64,15 @@ internal sealed record ReconstructReport(
     {
         if (DriftMethod == DriftMethod.None)
         {
-            text.Row("drift", "not removed (no trackers)");
+            text.Row("drift", "not removed");
             return;
         }
 
-        text.Row("drift removed", $"{TextReport.Figure(DriftRangeRad, "rad")} over {TrackerCount} trackers");
+        text.Row("drift removed", $"{TextReport.Figure(DriftRangeRad, "rad")} over {TrackerCount} showings of the tracked pattern");
         text.Row("largest step", $"{TextReport.Figure(LargestTrackerGapRad, "rad")} from one tracker to the next");
         text.Row("tracker overlap", $"at least {TextReport.Figure(SmallestTrackerOverlap)}");
+        text.Row("random walk", WalkRateRad2PerS, "rad²/s");
+        text.Row("phase step error", $"at most {TextReport.Figure(LargestStepErrorRad, "rad")}, removed");
+        text.Row("laser power", $"within {TextReport.Figure(100 * PowerSpread)} % over all frames, divided out");
     }
 }

@@ -25,7 +25,7 @@ internal sealed record ShowReport(
         Facts.ToList().ForEach(f => text.Row(f.Name, f.Value));
         text.Blank();
         text.Heading("Datasets");
-        Datasets.ToList().ForEach(d => text.Row(d.Path, $"{d.Type} ({string.Join(", ", d.Shape)}) {d.Units}".TrimEnd()));
+        text.Rows([.. Datasets.Select(d => (d.Path, $"{d.Type} ({string.Join(", ", d.Shape)}) {d.Units}".TrimEnd()))]);
     }
 }
 

@@ -7,6 +7,7 @@ using TmLab.Measurement;
 using TmLab.Numerics.LinearAlgebra;
 using TmLab.Reconstruction;
 using TmLab.Shaping;
+using TmLab.Storage.AtomicFiles;
 using TmLab.Storage.Ingest;
 using TmLab.Storage.Manifest;
 using TmLab.Storage.StageFiles;
@@ -18,6 +19,7 @@ internal sealed class StoredStages : IStages
 {
     public MeasurementFacts Ingest(IngestRequest request, StageContext context)
     {
+        RefuseTaken(request.Output, context);
         using OpenedMeasurement measurement = MeasurementFolder.Open(request.Folder);
         StageProvenance provenance = Provenance.Of(context, [measurement.ManifestPath], new { request.Folder });
         using var writer = new MeasurementFileWriter(
@@ -27,6 +29,7 @@ internal sealed class StoredStages : IStages
 
     public TransmissionMatrixFacts Reconstruct(ReconstructRequest request, StageContext context)
     {
+        RefuseTaken(request.Output, context);
         using var measurement = new MeasurementFileReader(request.Input);
         var defaults = new ReconstructionSettings();
         ReconstructionSettings settings = defaults with
@@ -46,6 +49,7 @@ internal sealed class StoredStages : IStages
 
     public ChannelFacts FindChannels(ChannelsRequest request, StageContext context)
     {
+        RefuseTaken(request.Output, context);
         using var matrix = new MatrixFileReader(request.Input);
         var settings = new ChannelSettings();
         var analysis = new ChannelAnalysis(matrix, matrix.Facts, request.Input, settings, Engine(context));
@@ -61,6 +65,7 @@ internal sealed class StoredStages : IStages
 
     public MaskOutcome MakeMask(MaskRequest request, StageContext context)
     {
+        RefuseTaken(request.Output, context);
         using var matrix = new MatrixFileReader(request.Input);
         ImmutableArray<FocusTarget> targets = [.. request.Targets.Select(t => new FocusTarget(t))];
         FocusMask mask = FocusMask.Make(matrix, matrix.Facts, request.Input, targets);
@@ -78,6 +83,9 @@ internal sealed class StoredStages : IStages
                 choice.ToString().ToLowerInvariant(), found.Succeeded, found.Engine?.Description ?? found.Explanation ?? "");
         }),
     ]);
+
+    /// <summary>Before any long work: reading and digesting the input may take minutes.</summary>
+    private static void RefuseTaken(string output, StageContext context) => AtomicOutput.RefuseTaken(output, context.Settings.Force);
 
     private static ILinearAlgebraEngine Engine(StageContext context) =>
         LinearAlgebraEngines.Choose(context.Settings.Engine) switch

@@ -100,7 +100,9 @@ public sealed class AtomicOutput : IDisposable
         }
     }
 
-    private static void RefuseTaken(string path, bool overwrite)
+    /// <summary>Refuses a name that is taken: for callers that have long work to do before they begin the output.</summary>
+    /// <exception cref="OutputException">A folder stands there, or a file that may not be replaced.</exception>
+    public static void RefuseTaken(string path, bool overwrite)
     {
         if (Directory.Exists(path))
         {

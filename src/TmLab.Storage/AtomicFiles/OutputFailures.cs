@@ -4,7 +4,7 @@ using TmLab.Failures;
 namespace TmLab.Storage.AtomicFiles;
 
 /// <summary>The one place where failures of the operating system while writing become <see cref="OutputException"/>s.</summary>
-internal static class OutputFailures
+public static class OutputFailures
 {
     private const int UnixNoSpace = 28;
     private const int UnixReadOnlyFileSystem = 30;

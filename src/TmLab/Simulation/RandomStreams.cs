@@ -55,7 +55,7 @@ internal readonly struct RandomStreams(ulong seed)
     public static double NormalFromWords(in RandomBlock block)
     {
         double radius = Math.Sqrt(-2 * PortableMath.Log((block.W2 + 1.0) * TwoToMinus32));
-        return radius * PortableMath.SinCosTurns(block.W3 * TwoToMinus32).Cos;
+        return radius * PortableMath.CosTurns(block.W3 * TwoToMinus32);
     }
 
     /// <summary>Box and Muller's pair as the two parts of a circular complex normal number: |z|² = −ln u is exponential, the phase uniform.</summary>

@@ -24,7 +24,10 @@ public sealed class RecordedFrames : IFrameBlockReader
     public ImageSize FrameSize { get; }
 
     /// <summary>One frame's counts, row-major.</summary>
-    public Span<ushort> Frame(int index) => _counts.Slice((long)index * FrameSize.PixelCount, FrameSize.PixelCount);
+    public ReadOnlySpan<ushort> Frame(int index) => Writable(index);
+
+    /// <summary>One frame's counts, for the bench to fill in.</summary>
+    internal Span<ushort> Writable(int index) => _counts.Slice((long)index * FrameSize.PixelCount, FrameSize.PixelCount);
 
     /// <inheritdoc/>
     public void Read(int firstFrame, int frameCount, int firstPixel, int pixelCount, Span<ushort> destination)

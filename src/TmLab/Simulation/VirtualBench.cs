@@ -114,7 +114,7 @@ public sealed class VirtualBench : IDisposable
         {
             Parallel.For(0, FrameCount, BenchThreads.Options(threads, cancellation), place =>
             {
-                Render(place, frames.Frame(place));
+                Render(place, frames.Writable(place));
                 progress?.Report(new StageProgress("simulating frames", Interlocked.Increment(ref done), FrameCount, "frames"));
             });
             return frames;

@@ -22,8 +22,8 @@ internal static class PageRunner
         using var work = new TemporaryFolder();
         using var aside = new TemporaryFolder();
         CopyDemoData(work);
-        string script = aside.Combine("page.sh");
-        string log = aside.Combine("commands.log");
+        string script = aside.File("page.sh");
+        string log = aside.File("commands.log");
         File.WriteAllText(log, "");
         File.WriteAllText(script, Script(page));
 
@@ -43,7 +43,7 @@ internal static class PageRunner
         string demo = RepositoryFolder.Combine("data-demo");
         if (Directory.Exists(demo))
         {
-            TemporaryFolder.CopyTree(demo, work.Combine("data-demo"));
+            FolderTree.Copy(demo, work.File("data-demo"));
         }
     }
 

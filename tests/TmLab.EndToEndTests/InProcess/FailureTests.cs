@@ -10,7 +10,7 @@ public sealed class FailureTests
     {
         { "bad input", 3, "tmlab: m.h5, /frames/counts: has rank 2; write frames as (frame, y, x)\ntmlab: schedule.csv, row 4: no phase; give one\n" },
         { "numerical", 1, "tmlab: the decomposition did not converge; try --engine managed\n" },
-        { "exists", 5, "tmlab: t.h5: already exists; name another file or give --force\n" },
+        { "exists", 5, "tmlab: t.h5: already exists; give another name or --force\n" },
         { "disk full", 5, "tmlab: t.h5: the disk is full; make room\n" },
         { "cancelled", 130, "tmlab: interrupted; no output was changed by the stage that was running\n" },
         { "memory", 1, "tmlab: not enough memory; give a smaller --memory or use a larger machine\n" },

@@ -42,7 +42,7 @@ internal sealed class FakeStages(Func<Exception>? failure = null) : IStages
         Flatness: [],
         new PixelFacts([0, 0], [0, 1], [true, false], [0.5f, 0.1f], [float.NaN, float.NaN]),
         new ModeFacts([true, true, true, true], [float.NaN, float.NaN, float.NaN, float.NaN]),
-        new DriftFacts(DriftMethod.TrackersInterpolated, [0, 1, 2], [0, 0.5, 1.25], [1, 0.98, 0.97], []),
+        new DriftFacts(DriftMethod.TrackersInterpolated, [0, 1, 2], [0, 0.5, 1.25], [1, 0.98, 0.97], [0, 1.25], [0.1, 0.2], [0, -0.02, 0.01], [0.98, 1.01], 0.7),
         new MatrixQuality(0.5, double.NaN, 1, 4, RowsNormalised: false, ["One pixel is not valid."]));
 
     private T Answer<T>(StageContext context, T result)

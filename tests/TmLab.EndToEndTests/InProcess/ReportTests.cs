@@ -20,7 +20,7 @@ public sealed class ReportTests
         [
             "schema", "schema_version", "input", "output", "pixel_count", "mode_count", "valid_pixel_count", "valid_mode_count",
             "drift_method", "tracker_count", "drift_range_rad", "largest_tracker_gap_rad", "smallest_tracker_overlap",
-            "mean_visibility", "signal_to_noise", "rows_normalised", "elapsed_s", "warnings",
+            "walk_rate_rad2_per_s", "largest_step_error_rad", "power_spread", "mean_visibility", "signal_to_noise", "rows_normalised", "elapsed_s", "warnings",
         ];
         Assert.Equal(expected, document.RootElement.EnumerateObject().Select(m => m.Name));
         Assert.Equal("tmlab.reconstruct", document.RootElement.GetProperty("schema").GetString());

@@ -1,5 +1,6 @@
 using System.Diagnostics;
 using System.Reflection;
+using TmLab.TestKit;
 
 namespace TmLab.EndToEndTests.Running;
 

@@ -68,7 +68,7 @@ internal sealed record ReconstructReport(
             return;
         }
 
-        text.Row("drift removed", $"{TextReport.Figure(DriftRangeRad, "rad")} over {TrackerCount} trackers");
+        text.Row("drift removed", $"{TextReport.Figure(DriftRangeRad, "rad")} over {TrackerCount} showings of the tracked pattern");
         text.Row("largest step", $"{TextReport.Figure(LargestTrackerGapRad, "rad")} from one tracker to the next");
         text.Row("tracker overlap", $"at least {TextReport.Figure(SmallestTrackerOverlap)}");
         text.Row("random walk", WalkRateRad2PerS, "rad²/s");

@@ -1,4 +1,6 @@
+using System.Buffers.Binary;
 using System.Numerics;
+using System.Runtime.InteropServices;
 using PureHDF;
 using PureHDF.Selections;
 using PureHDF.VOL.Native;
@@ -17,6 +19,7 @@ internal sealed class Hdf5FrameSource : IFrameSource
 {
     private const long BlockBytes = 8 << 20;
     private const long LargestBlockBytes = 128 << 20;
+    private const ulong LargestCacheBytes = 256 << 20;
     private const long LargestChunkBytes = 1L << 30;
 
     private readonly NativeFile _file;
@@ -25,8 +28,10 @@ internal sealed class Hdf5FrameSource : IFrameSource
     private readonly string _path;
     private readonly Func<int, int, ushort[]> _readBlock;
     private readonly int _blockFrames;
+    private readonly H5DatasetAccess _access;
     private ushort[] _block = [];
     private int _blockStart;
+    private bool? _isBigEndian;
     private int _next;
 
     public Hdf5FrameSource(string path, string name, string dataset)
@@ -40,6 +45,7 @@ internal sealed class Hdf5FrameSource : IFrameSource
             (FrameCount, FrameSize) = Shape(Hdf5Opening.Guarded(name, dataset, () => _dataset.Space.Dimensions));
             _readBlock = ReaderFor(_dataset.Type);
             _blockFrames = BlockFrames();
+            _access = new H5DatasetAccess { ChunkCache = CacheForBlock() };
         }
         catch
         {
@@ -118,8 +124,7 @@ internal sealed class Hdf5FrameSource : IFrameSource
     {
         long frameBytes = (long)FrameSize.PixelCount * Math.Max(2, _dataset.Type.Size);
         long wanted = Math.Max(1, BlockBytes / frameBytes);
-        ulong[]? chunks = _dataset.Layout.Class == H5DataLayoutClass.Chunked ? _dataset.Layout.Chunks : null;
-        if (chunks is not { Length: 3 })
+        if (ChunkShape() is not { } chunks)
         {
             return (int)Math.Min(wanted, FrameCount);
         }
@@ -128,6 +133,26 @@ internal sealed class Hdf5FrameSource : IFrameSource
         long deep = (wanted + (long)chunks[0] - 1) / (long)chunks[0] * (long)chunks[0];
         return (int)Math.Min(FrameCount, Math.Min(deep, Math.Max(1, LargestBlockBytes / frameBytes)));
     }
+
+    /// <summary>
+    /// A cache for all chunks that a block touches. A block is read row by row across chunks; the library's default cache of 1 MB
+    /// would have each chunk decompressed again for every row.
+    /// </summary>
+    private SimpleReadingChunkCache CacheForBlock()
+    {
+        if (ChunkShape() is not { } chunks)
+        {
+            return new SimpleReadingChunkCache(1, 1);
+        }
+
+        static ulong Covering(ulong length, ulong chunk) => (length + chunk - 1) / chunk;
+        ulong count = Covering((ulong)_blockFrames, chunks[0]) * Covering((ulong)FrameSize.Height, chunks[1]) * Covering((ulong)FrameSize.Width, chunks[2]);
+        ulong bytes = Math.Min(count * chunks.Aggregate((product, side) => product * side) * (ulong)_dataset.Type.Size, LargestCacheBytes);
+        return new SimpleReadingChunkCache((int)Math.Min(count, int.MaxValue), bytes);
+    }
+
+    private ulong[]? ChunkShape() =>
+        _dataset.Layout.Class == H5DataLayoutClass.Chunked && _dataset.Layout.Chunks is { Length: 3 } chunks ? chunks : null;
 
     private void CheckChunk(ulong[] chunks)
     {
@@ -138,18 +163,64 @@ internal sealed class Hdf5FrameSource : IFrameSource
         }
     }
 
+    /// <summary>
+    /// Reads stored bytes and orders them here: the library refuses numbers whose most significant byte comes first.
+    /// </summary>
     private ushort[] ReadBlock<T>(int firstFrame, int frameCount)
         where T : unmanaged, IBinaryInteger<T>
     {
-        var selection = new HyperslabSelection(
-            3, [(ulong)firstFrame, 0, 0], [(ulong)frameCount, (ulong)FrameSize.Height, (ulong)FrameSize.Width]);
-        T[] read = Hdf5Opening.Guarded(_name, $"{_path}, frame {firstFrame}", () => _dataset.Read<T[]>(fileSelection: selection));
-        if (read.Length != (long)frameCount * FrameSize.PixelCount)
+        var read = new T[frameCount * FrameSize.PixelCount];
+        Hdf5Opening.Guarded(_name, $"{_path}, frame {firstFrame}", () => ReadBytes(firstFrame, frameCount, FrameSize, read));
+        if (_isBigEndian ??= IsBigEndian<T>())
         {
-            throw new BadInputException(_name, $"{_path}, frame {firstFrame}", "fewer numbers are stored than the shape says", "copy the file again from the bench");
+            Reverse(read);
         }
 
         return read as object as ushort[] ?? Narrow(read, firstFrame);
+    }
+
+    private bool ReadBytes<T>(int firstFrame, int frameCount, ImageSize size, T[] destination)
+        where T : unmanaged
+    {
+        var selection = new HyperslabSelection(3, [(ulong)firstFrame, 0, 0], [(ulong)frameCount, (ulong)size.Height, (ulong)size.Width]);
+        _dataset.Read(_access, MemoryMarshal.AsBytes(destination.AsSpan()), fileSelection: selection);
+        return true;
+    }
+
+    /// <summary>
+    /// Whether numbers are stored most significant byte first. The library does not say, but a typed read of one element (whose
+    /// bytes were read before) fails for that reason alone.
+    /// </summary>
+    private bool IsBigEndian<T>()
+        where T : unmanaged
+    {
+        try
+        {
+            _dataset.Read<T[]>(fileSelection: new HyperslabSelection(3, [0, 0, 0], [1, 1, 1]));
+            return false;
+        }
+        catch (Exception failure) when (failure is not OutOfMemoryException)
+        {
+            return true;
+        }
+    }
+
+    private static void Reverse<T>(T[] numbers)
+        where T : unmanaged
+    {
+        Span<byte> bytes = MemoryMarshal.AsBytes(numbers.AsSpan());
+        switch (bytes.Length / numbers.Length)
+        {
+            case 2:
+                BinaryPrimitives.ReverseEndianness(MemoryMarshal.Cast<byte, ushort>(bytes), MemoryMarshal.Cast<byte, ushort>(bytes));
+                break;
+            case 4:
+                BinaryPrimitives.ReverseEndianness(MemoryMarshal.Cast<byte, uint>(bytes), MemoryMarshal.Cast<byte, uint>(bytes));
+                break;
+            case 8:
+                BinaryPrimitives.ReverseEndianness(MemoryMarshal.Cast<byte, ulong>(bytes), MemoryMarshal.Cast<byte, ulong>(bytes));
+                break;
+        }
     }
 
     private ushort[] Narrow<T>(T[] read, int firstFrame)
@@ -158,7 +229,7 @@ internal sealed class Hdf5FrameSource : IFrameSource
         var counts = new ushort[read.Length];
         for (int i = 0; i < read.Length; i++)
         {
-            // Truncation and back: equal exactly when the number lies in 0 … 65535.
+            // Truncation and back: equal exactly when the number lies in 0 … 65535 (or is negative in so few bits that it wraps).
             counts[i] = ushort.CreateTruncating(read[i]);
             if (read[i] < T.Zero || T.CreateTruncating(counts[i]) != read[i])
             {

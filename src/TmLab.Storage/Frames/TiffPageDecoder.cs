@@ -26,8 +26,14 @@ internal sealed class TiffPageDecoder : IDisposable
         _name = name;
         _structure = structure;
         stream.Position = 0;
-        _tiff = Tiff.ClientOpen(name, "r", _log, new TiffFileStream(stream))
-            ?? throw new BadInputException(name, null, $"the TIFF file cannot be opened: {_log.First}", "write the file again");
+        try
+        {
+            _tiff = Tiff.ClientOpen(name, "r", _log, new TiffFileStream(stream)) ?? throw Damaged(0, null);
+        }
+        catch (Exception failure) when (IsFromDamage(failure))
+        {
+            throw Damaged(0, failure);
+        }
     }
 
     /// <summary>Decodes a page into row-major counts.</summary>
@@ -50,15 +56,17 @@ internal sealed class TiffPageDecoder : IDisposable
                 ReadStrips(page, destination);
             }
         }
-        catch (Exception failure) when (failure is IOException or IndexOutOfRangeException or ArgumentException or NullReferenceException
-            or InvalidCastException or OverflowException or DivideByZeroException or OutOfMemoryException)
+        catch (Exception failure) when (IsFromDamage(failure))
         {
-            // The library does not check all that a damaged file may claim.
             throw Damaged(page, failure);
         }
     }
 
     public void Dispose() => _tiff.Dispose();
+
+    /// <summary>Whether an exception of the library comes from a damaged file: it does not check all that a file may claim.</summary>
+    private static bool IsFromDamage(Exception failure) => failure is IOException or IndexOutOfRangeException or ArgumentException
+        or NullReferenceException or InvalidCastException or OverflowException or DivideByZeroException or OutOfMemoryException or FormatException;
 
     private int Bits => (int)_structure.Format.Bits;
 

@@ -28,6 +28,8 @@ internal sealed class StageFileWriter : IDisposable
     /// <summary>The largest number of lines of a text attribute.</summary>
     public const int MostLines = 3000;
 
+    private const int UnspecificIoFailure = unchecked((int)0x80131620);
+
     private readonly AtomicOutput _output;
     private readonly SafeFileHandle _file;
     private readonly StageFormat _format;
@@ -59,7 +61,7 @@ internal sealed class StageFileWriter : IDisposable
         AtomicOutput output = AtomicOutput.Begin(path, overwrite);
         try
         {
-            SafeFileHandle file = OutputFailures.Guard(path, () => Create(output.TemporaryPath, reserved));
+            SafeFileHandle file = OutputFailures.Guard(path, () => Create(output, reserved));
             return new StageFileWriter(output, file, format, provenance, reserved);
         }
         catch
@@ -154,14 +156,23 @@ internal sealed class StageFileWriter : IDisposable
         }
     }
 
-    private static SafeFileHandle Create(string path, ImmutableArray<ReservedDataset> reserved)
+    private static SafeFileHandle Create(AtomicOutput output, ImmutableArray<ReservedDataset> reserved)
     {
         // Asking for the room at once makes a full disk known before hours of computing.
         long end = reserved.Select(d => d.Offset + d.ByteCount).DefaultIfEmpty(0).Max();
-        SafeFileHandle file = File.OpenHandle(
-            path, FileMode.CreateNew, FileAccess.ReadWrite, FileShare.Read, FileOptions.RandomAccess, end);
-        RandomAccess.SetLength(file, end);
-        return file;
+        try
+        {
+            SafeFileHandle file = File.OpenHandle(
+                output.TemporaryPath, FileMode.CreateNew, FileAccess.ReadWrite, FileShare.Read, FileOptions.RandomAccess, end);
+            RandomAccess.SetLength(file, end);
+            return file;
+        }
+        catch (IOException e) when (e.HResult == UnspecificIoFailure)
+        {
+            // Failures to open carry the system's error number; only the refusal of room carries none.
+            throw new OutputException(
+                output.FinalPath, OutputFailure.DiskFull, $"free {end} bytes or choose another disk", e);
+        }
     }
 
     private void AddProvenance(StageProvenance provenance)

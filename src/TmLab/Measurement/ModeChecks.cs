@@ -19,7 +19,7 @@ public static class ModeChecks
         return problems.ToImmutable();
     }
 
-    /// <summary>Whether every element of a custom pattern matrix (K × N, row-major) is a finite number and no pattern is empty.</summary>
+    /// <summary>Whether every element of a custom pattern matrix (K × N, row-major) is a finite number.</summary>
     public static ImmutableArray<InputProblem> CheckPatterns(ReadOnlySpan<Complex> patterns, int modeCount, string file)
     {
         var problems = new ProblemList(file);

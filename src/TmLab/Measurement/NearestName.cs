@@ -5,9 +5,11 @@ public static class NearestName
 {
     /// <summary>
     /// The known name with the least edit distance (Levenshtein 1966: insertions, deletions, substitutions, case ignored) from
-    /// <paramref name="name"/>; the first of several equally near ones; null when there are no known names.
+    /// <paramref name="name"/>, where a name that begins with the other counts as one edit away (units are often left out); the
+    /// first of several equally near ones; null when there are no known names.
     /// </summary>
-    public static string? Of(string name, IEnumerable<string> known) => known.MinBy(k => EditDistance(name, k));
+    public static string? Of(string name, IEnumerable<string> known) =>
+        known.MinBy(k => IsBeginning(name, k) || IsBeginning(k, name) ? Math.Min(1, EditDistance(name, k)) : EditDistance(name, k));
 
     /// <summary>The number of single-character insertions, deletions and substitutions that turn one name into the other; case ignored.</summary>
     public static int EditDistance(string first, string second)
@@ -28,6 +30,9 @@ public static class NearestName
 
         return row[second.Length];
     }
+
+    private static bool IsBeginning(string start, string whole) =>
+        start.Length >= 3 && whole.StartsWith(start, StringComparison.OrdinalIgnoreCase);
 
     private static bool SameLetter(char a, char b) => char.ToUpperInvariant(a) == char.ToUpperInvariant(b);
 }

@@ -96,9 +96,11 @@ internal sealed class MatrixAssessment
 
     private IEnumerable<string> Warnings(int valid)
     {
-        if (_drift.Method == DriftMethod.None)
+        if (_drift.TrackerTimeS.Length < 2)
         {
-            yield return "There are no trackers to follow the phase drift: what drift there was is still in the matrix. "
+            yield return (_drift.Method == DriftMethod.SmoothedPath
+                ? "There are no trackers: the phase drift inside every mode was removed, but what drifted from one mode to the next is still in the matrix. "
+                : "There are no trackers to follow the phase drift: what drift there was is still in the matrix. ")
                 + "Show one pattern again every few modes, with the role tracker.";
         }
 
@@ -108,7 +110,7 @@ internal sealed class MatrixAssessment
             if (gap > _settings.TrackerGapWarningRad)
             {
                 yield return FormattableString.Invariant(
-                    $"The phase moved by {gap:F2} rad between trackers {k - 1} and {k} ({_drift.TrackerTimeS[k - 1]:F2} s to {_drift.TrackerTimeS[k]:F2} s): near π it cannot be unwrapped. Show trackers more often.");
+                    $"The phase moved by {gap:F2} rad from the tracker at {_drift.TrackerTimeS[k - 1]:F2} s to that at {_drift.TrackerTimeS[k]:F2} s: near π it cannot be unwrapped. Show trackers more often.");
             }
         }
 

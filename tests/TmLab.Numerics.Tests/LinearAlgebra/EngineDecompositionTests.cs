@@ -186,10 +186,10 @@ public sealed class EngineDecompositionTests
 
     private static double Norm(Complex[,] a) => Math.Sqrt(a.Cast<Complex>().Sum(z => z.Magnitude * z.Magnitude));
 
-    private static void AssertNear(IReadOnlyList<double> expected, IReadOnlyList<double> found, double tolerance)
+    private static void AssertNear(double[] expected, double[] found, double tolerance)
     {
-        Assert.Equal(expected.Count, found.Count);
-        for (int k = 0; k < expected.Count; k++)
+        Assert.Equal(expected.Length, found.Length);
+        for (int k = 0; k < expected.Length; k++)
         {
             Assert.True(Math.Abs(expected[k] - found[k]) <= tolerance, $"{k}: expected {expected[k]}, found {found[k]}, tolerance {tolerance}");
         }

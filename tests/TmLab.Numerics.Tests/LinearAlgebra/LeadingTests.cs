@@ -20,7 +20,7 @@ public sealed class LeadingTests
         double[] values = [.. Enumerable.Range(0, 60).Select(k => 10 * Math.Exp(-0.1 * k))];
         InMemoryMatrix matrix = Dense.Reader(Dense.WithSpectrum(200, values, 51));
         ILinearAlgebraEngine engine = Engines.Get(choice);
-        using SingularVectors found = TallSpectrum.Leading(matrix, 6, engine, s_randomised);
+        using SingularVectors found = Tall.Leading(matrix, 6, engine, s_randomised);
         Assert.Equal(SpectrumMethod.Randomised, found.Spectrum.Method);
         for (int k = 0; k < 6; k++)
         {
@@ -31,7 +31,7 @@ public sealed class LeadingTests
         }
 
         var u = new InMemoryMatrix(200, 6);
-        OutputVectorCheck check = TallSpectrum.WriteOutputVectors(matrix, found, u, engine, s_randomised);
+        OutputVectorCheck check = Tall.Write(matrix, found, u, engine, s_randomised);
         Assert.True(check.DiagonalError < 1e-5, $"{check}");
     }
 
@@ -44,8 +44,8 @@ public sealed class LeadingTests
         Complex[,] a = Dense.Random(300, 80, 52);
         InMemoryMatrix matrix = Dense.Reader(a);
         ILinearAlgebraEngine engine = Engines.Get(EngineChoice.Auto);
-        SpectrumOutcome exact = TallSpectrum.SingularValues(matrix, engine);
-        using SingularVectors found = TallSpectrum.Leading(matrix, 8, engine, s_randomised with { MaximumPasses = passes });
+        SpectrumOutcome exact = Tall.Values(matrix, engine);
+        using SingularVectors found = Tall.Leading(matrix, 8, engine, s_randomised with { MaximumPasses = passes });
         Assert.Equal(passes, found.Spectrum.Passes);
         double rounding = 1e-6 * exact.SingularValues[0];
         for (int k = 0; k < 8; k++)
@@ -64,7 +64,7 @@ public sealed class LeadingTests
     {
         double[] values = [9, 7, 5, 1, 0.9, 0.8, 0.7, 0.6, 0.5, 0.4];
         Complex[,] a = Dense.Adjoint(Dense.WithSpectrum(50, values, 53));
-        using SingularVectors found = TallSpectrum.Leading(Dense.Reader(a), 3, Engines.Get(EngineChoice.Auto), s_randomised);
+        using SingularVectors found = Tall.Leading(Dense.Reader(a), 3, Engines.Get(EngineChoice.Auto), s_randomised);
         Assert.Equal(50, found.InputVectors.Rows);
         Assert.Equal(9, found.Spectrum.SingularValues[0], 1e-5);
         Assert.Equal(5, found.Spectrum.SingularValues[2], 1e-5);
@@ -74,7 +74,7 @@ public sealed class LeadingTests
     public void A_matrix_of_less_rank_than_the_channels_asked_for_ends_early()
     {
         double[] values = [4, 2, .. Enumerable.Repeat(0.0, 28)];
-        using SingularVectors found = TallSpectrum.Leading(
+        using SingularVectors found = Tall.Leading(
             Dense.Reader(Dense.WithSpectrum(100, values, 54)), 5, Engines.Get(EngineChoice.Auto), s_randomised);
         Assert.Equal(4, found.Spectrum.SingularValues[0], 1e-5);
         Assert.Equal(2, found.Spectrum.SingularValues[1], 1e-5);
@@ -87,10 +87,10 @@ public sealed class LeadingTests
     {
         InMemoryMatrix matrix = Dense.Reader(Dense.Random(300, 80, 55));
         ILinearAlgebraEngine engine = Engines.Get(EngineChoice.Auto);
-        using SingularVectors found = TallSpectrum.Leading(matrix, 8, engine);
+        using SingularVectors found = Tall.Leading(matrix, 8, engine);
         Assert.Equal(SpectrumMethod.Gram, found.Spectrum.Method);
         Assert.Equal(8, found.Spectrum.SingularValues.Length);
-        Assert.Throws<ArgumentOutOfRangeException>(() => TallSpectrum.Leading(matrix, 81, engine));
-        Assert.Throws<ArgumentOutOfRangeException>(() => TallSpectrum.Leading(matrix, 0, engine));
+        Assert.Throws<ArgumentOutOfRangeException>(() => Tall.Leading(matrix, 81, engine));
+        Assert.Throws<ArgumentOutOfRangeException>(() => Tall.Leading(matrix, 0, engine));
     }
 }

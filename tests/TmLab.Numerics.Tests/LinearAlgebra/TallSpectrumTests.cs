@@ -22,7 +22,7 @@ public sealed class TallSpectrumTests
     {
         double[] expected = [.. Enumerable.Range(0, 24).Select(k => 10.0 - (0.35 * k))];
         InMemoryMatrix matrix = Dense.Reader(Dense.WithSpectrum(300, expected, 31));
-        SpectrumOutcome outcome = TallSpectrum.SingularValues(matrix, Engines.Get(choice), s_smallTiles);
+        SpectrumOutcome outcome = Tall.Values(matrix, Engines.Get(choice), s_smallTiles);
         Assert.Equal(SpectrumMethod.Gram, outcome.Method);
         Assert.Equal(300, matrix.RowsRead);
         Assert.Equal(expected[0] / expected[^1], outcome.ConditionEstimate, 1e-5);
@@ -45,7 +45,7 @@ public sealed class TallSpectrumTests
                 a[row, 4] = smallest == 0 ? 2 * a[row, 0] : a[row, 4] * (smallest == 0.5 ? 1 : smallest);
             }
 
-            SpectrumOutcome outcome = TallSpectrum.SingularValues(Dense.Reader(a), engine, s_smallTiles);
+            SpectrumOutcome outcome = Tall.Values(Dense.Reader(a), engine, s_smallTiles);
             Assert.Equal(method, outcome.Method);
             Assert.Equal(1 + (int)method, outcome.Passes);
             Assert.Equal(method == SpectrumMethod.TallSkinnyQr, outcome.SingularValues[^1] < 1e-14);
@@ -58,8 +58,8 @@ public sealed class TallSpectrumTests
     {
         ILinearAlgebraEngine engine = Engines.Get(choice);
         Complex[,] a = Dense.Random(90, 20, 33);
-        SpectrumOutcome tall = TallSpectrum.SingularValues(Dense.Reader(a), engine, s_smallTiles);
-        SpectrumOutcome wide = TallSpectrum.SingularValues(Dense.Reader(Dense.Adjoint(a)), engine, s_smallTiles);
+        SpectrumOutcome tall = Tall.Values(Dense.Reader(a), engine, s_smallTiles);
+        SpectrumOutcome wide = Tall.Values(Dense.Reader(Dense.Adjoint(a)), engine, s_smallTiles);
         AssertNear(tall.SingularValues, wide.SingularValues, _ => 1e-5 * tall.SingularValues[0]);
     }
 
@@ -72,9 +72,9 @@ public sealed class TallSpectrumTests
         {
             Complex[,] a = Dense.Random(rows, columns, 34);
             InMemoryMatrix matrix = Dense.Reader(a);
-            using SingularVectors vectors = TallSpectrum.Vectors(matrix, count, engine, s_smallTiles);
+            using SingularVectors vectors = Tall.Vectors(matrix, count, engine, s_smallTiles);
             var u = new InMemoryMatrix(rows, count);
-            OutputVectorCheck check = TallSpectrum.WriteOutputVectors(matrix, vectors, u, engine, s_smallTiles);
+            OutputVectorCheck check = Tall.Write(matrix, vectors, u, engine, s_smallTiles);
 
             // u σ₁/σ_j times a few; the check and the plain product agree on it.
             double bound = 40 * SingleRoundoff * vectors.Spectrum.ConditionEstimate;
@@ -97,9 +97,9 @@ public sealed class TallSpectrumTests
 
         InMemoryMatrix matrix = Dense.Reader(a);
         ILinearAlgebraEngine engine = Engines.Get(choice);
-        using SingularVectors vectors = TallSpectrum.Vectors(matrix, 4, engine, s_smallTiles);
+        using SingularVectors vectors = Tall.Vectors(matrix, 4, engine, s_smallTiles);
         var u = new InMemoryMatrix(50, 4);
-        OutputVectorCheck check = TallSpectrum.WriteOutputVectors(matrix, vectors, u, engine, s_smallTiles);
+        OutputVectorCheck check = Tall.Write(matrix, vectors, u, engine, s_smallTiles);
         Assert.True(check.OrthonormalityError < 1e-5, $"{check}");
         Assert.All(Enumerable.Range(0, 50), row => Assert.Equal(default, u.Row(row)[3]));
     }
@@ -110,7 +110,7 @@ public sealed class TallSpectrumTests
     {
         foreach ((int rows, int columns) in (ReadOnlySpan<(int, int)>)[(60, 9), (9, 60)])
         {
-            using SingularVectors vectors = TallSpectrum.Vectors(Dense.Reader(Dense.Random(rows, columns, 36)), 9, Engines.Get(choice), s_smallTiles);
+            using SingularVectors vectors = Tall.Vectors(Dense.Reader(Dense.Random(rows, columns, 36)), 9, Engines.Get(choice), s_smallTiles);
             for (int column = 0; column < 9; column++)
             {
                 Complex64[] v = [.. Enumerable.Range(0, columns).Select(row => vectors.InputVectors[row, column])];
@@ -135,7 +135,7 @@ public sealed class TallSpectrumTests
             }
         }
 
-        using SingularVectors vectors = TallSpectrum.Vectors(Dense.Reader(a), 4, Engines.Get(choice));
+        using SingularVectors vectors = Tall.Vectors(Dense.Reader(a), 4, Engines.Get(choice));
         Assert.All(Enumerable.Range(0, 4), column => Assert.Equal(0.5, vectors.InputVectors[0, column].r, 1e-5));
     }
 
@@ -145,13 +145,13 @@ public sealed class TallSpectrumTests
     {
         ILinearAlgebraEngine engine = Engines.Get(choice);
         InMemoryMatrix matrix = Dense.Reader(Dense.Random(120, 10, 37));
-        SpectrumOutcome whole = TallSpectrum.SingularValues(matrix, engine);
+        SpectrumOutcome whole = Tall.Values(matrix, engine);
         Gen.Long[1, 20_000].Sample(
             bytes =>
             {
-                SpectrumOutcome tiled = TallSpectrum.SingularValues(matrix, engine, new SpectrumOptions { TileBytes = bytes });
+                SpectrumOutcome tiled = Tall.Values(matrix, engine, new SpectrumOptions { TileBytes = bytes });
                 AssertNear(whole.SingularValues, tiled.SingularValues, _ => 10 * SingleRoundoff * whole.SingularValues[0]);
-                using SingularVectors vectors = TallSpectrum.Vectors(matrix, 10, engine, new SpectrumOptions { TileBytes = bytes, RelativeAccuracy = 0 });
+                using SingularVectors vectors = Tall.Vectors(matrix, 10, engine, new SpectrumOptions { TileBytes = bytes, RelativeAccuracy = 0 });
                 Assert.Equal(SpectrumMethod.TallSkinnyQr, vectors.Spectrum.Method);
                 AssertNear(whole.SingularValues, vectors.Spectrum.SingularValues, _ => 10 * SingleRoundoff * whole.SingularValues[0]);
             },
@@ -164,8 +164,8 @@ public sealed class TallSpectrumTests
     public void Both_engines_agree(EngineChoice choice)
     {
         InMemoryMatrix matrix = Dense.Reader(Dense.Random(400, 50, 38));
-        using SingularVectors managed = TallSpectrum.Vectors(matrix, 50, Engines.Get(EngineChoice.Managed), s_smallTiles);
-        using SingularVectors other = TallSpectrum.Vectors(matrix, 50, Engines.Get(choice), s_smallTiles);
+        using SingularVectors managed = Tall.Vectors(matrix, 50, Engines.Get(EngineChoice.Managed), s_smallTiles);
+        using SingularVectors other = Tall.Vectors(matrix, 50, Engines.Get(choice), s_smallTiles);
         AssertNear(managed.Spectrum.SingularValues, other.Spectrum.SingularValues, _ => 10 * SingleRoundoff * managed.Spectrum.SingularValues[0]);
 
         // Vectors of gap g differ by the matrices' rounding over it, u σ₁²/g.
@@ -188,8 +188,8 @@ public sealed class TallSpectrumTests
     {
         ILinearAlgebraEngine engine = Engines.Get(choice);
         InMemoryMatrix matrix = Dense.Reader(Dense.Random(700, 140, 39));
-        using SingularVectors first = TallSpectrum.Vectors(matrix, 140, engine, s_smallTiles);
-        using SingularVectors second = TallSpectrum.Vectors(matrix, 140, engine, s_smallTiles);
+        using SingularVectors first = Tall.Vectors(matrix, 140, engine, s_smallTiles);
+        using SingularVectors second = Tall.Vectors(matrix, 140, engine, s_smallTiles);
         Assert.Equal(first.Spectrum.SingularValues, second.Spectrum.SingularValues);
         Assert.True(first.InputVectors.Buffer.AsSpan().SequenceEqual(second.InputVectors.Buffer.AsSpan()));
     }
@@ -203,8 +203,8 @@ public sealed class TallSpectrumTests
     {
         Complex[,] a = Dense.Random(200, 8, 40);
         ILinearAlgebraEngine engine = Engines.Get(EngineChoice.Auto);
-        SpectrumOutcome plain = TallSpectrum.SingularValues(Dense.Reader(a), engine);
-        SpectrumOutcome scaled = TallSpectrum.SingularValues(Dense.Reader(Dense.Product(a, Dense.Diagonal([.. Enumerable.Repeat((double)unit, 8)]))), engine);
+        SpectrumOutcome plain = Tall.Values(Dense.Reader(a), engine);
+        SpectrumOutcome scaled = Tall.Values(Dense.Reader(Dense.Product(a, Dense.Diagonal([.. Enumerable.Repeat((double)unit, 8)]))), engine);
         AssertNear(plain.SingularValues, scaled.SingularValues.Select(s => s / unit).ToArray(), _ => 10 * SingleRoundoff * plain.SingularValues[0]);
     }
 
@@ -214,8 +214,8 @@ public sealed class TallSpectrumTests
     {
         ILinearAlgebraEngine engine = Engines.Get(choice);
         var matrix = new InMemoryMatrix(30, 5);
-        Assert.All(TallSpectrum.SingularValues(matrix, engine).SingularValues, s => Assert.Equal(0, s));
-        using SingularVectors leading = TallSpectrum.Leading(matrix, 2, engine, new SpectrumOptions { PreferGramWhenCheaper = false, Oversampling = 2 });
+        Assert.All(Tall.Values(matrix, engine).SingularValues, s => Assert.Equal(0, s));
+        using SingularVectors leading = Tall.Leading(matrix, 2, engine, new SpectrumOptions { PreferGramWhenCheaper = false, Oversampling = 2 });
         Assert.All(leading.Spectrum.SingularValues, s => Assert.Equal(0, s));
     }
 
@@ -225,7 +225,7 @@ public sealed class TallSpectrumTests
         InMemoryMatrix matrix = Dense.Reader(Dense.Random(100, 6, 41));
         matrix.Row(57)[4] = new Complex64(1, float.NaN);
         NonFiniteMatrixException found = Assert.Throws<NonFiniteMatrixException>(
-            () => TallSpectrum.SingularValues(matrix, Engines.Get(EngineChoice.Auto), s_smallTiles));
+            () => Tall.Values(matrix, Engines.Get(EngineChoice.Auto), s_smallTiles));
         Assert.Equal((57, 4), (found.Row, found.Column));
     }
 
@@ -235,7 +235,7 @@ public sealed class TallSpectrumTests
         InMemoryMatrix matrix = Dense.Reader(Dense.Random(100, 6, 42));
         var reports = new Reports();
         ILinearAlgebraEngine engine = Engines.Get(EngineChoice.Managed);
-        TallSpectrum.SingularValues(matrix, engine, s_smallTiles, reports);
+        TallSpectrum.SingularValues(matrix, engine, s_smallTiles, reports, TestContext.Current.CancellationToken);
         Assert.Equal(new PassProgress("summing the Gram matrix", 100, 100), reports.Seen[^1]);
         Assert.Equal(3, reports.Seen.Count);
         Assert.Throws<OperationCanceledException>(
@@ -245,7 +245,7 @@ public sealed class TallSpectrumTests
     [Fact]
     public void A_failing_reader_ends_the_pass_with_its_own_exception()
     {
-        Assert.Throws<IOException>(() => TallSpectrum.SingularValues(new FailingReader(), Engines.Get(EngineChoice.Managed), s_smallTiles));
+        Assert.Throws<IOException>(() => Tall.Values(new FailingReader(), Engines.Get(EngineChoice.Managed), s_smallTiles));
     }
 
     private static double Square(SingularVectors vectors, int k) => vectors.Spectrum.SingularValues[k] * vectors.Spectrum.SingularValues[k];

@@ -61,14 +61,14 @@ internal sealed class DriftPathSolver
     }
 
     /// <summary>
-    /// The walk's variance rate, rad²/s, from the increments inside the groups where neighbouring steps are neighbours in time, and
-    /// from the trackers otherwise.
+    /// The walk's variance rate, rad²/s, from the increments from step to step inside the groups, what they have in common taken off,
+    /// and from the trackers: the larger.
     /// </summary>
     public double EstimateWalkRate()
     {
         double[] meanIncrement = MeanIncrements(out int[] counts);
         double moved = 0, time = 0;
-        foreach ((int from, int to, double increment, double variance) in NeighbouringIncrements())
+        foreach ((int from, int to, double increment, double variance) in Increments())
         {
             int step = _schedule.Frames[to].Step;
             double freedom = counts[step] > 1 ? (counts[step] - 1.0) / counts[step] : 1;
@@ -134,7 +134,7 @@ internal sealed class DriftPathSolver
     {
         var sum = new double[_steps];
         counts = new int[_steps];
-        foreach ((_, int to, double increment, _) in NeighbouringIncrements())
+        foreach ((_, int to, double increment, _) in Increments())
         {
             sum[_schedule.Frames[to].Step] += increment;
             counts[_schedule.Frames[to].Step]++;
@@ -144,21 +144,23 @@ internal sealed class DriftPathSolver
         return [.. sum.Select((s, i) => s / Math.Max(1, n[i]))];
     }
 
-    private IEnumerable<(int From, int To, double Increment, double Variance)> NeighbouringIncrements()
+    private IEnumerable<(int From, int To, double Increment, double Variance)> Increments()
     {
         for (int k = 0; k < _phases.Groups.Length; k++)
         {
             ImmutableArray<int> frames = _phases.Groups[k].Frames;
+            if (_phases.Fits[k].Information[0, 0] == 0)
+            {
+                continue;
+            }
+
             double[,] covariance = Covariance(_phases.Fits[k].Information);
             for (int s = 1; s < frames.Length; s++)
             {
-                if (_place[frames[s]] == _place[frames[s - 1]] + 1)
-                {
-                    double increment = _phases.Fits[k].PhaseRad[s] - _phases.Fits[k].PhaseRad[s - 1]
-                        - (_commandedRad[frames[s]] - _commandedRad[frames[s - 1]]);
-                    double variance = covariance[s, s] + covariance[s - 1, s - 1] - (2 * covariance[s, s - 1]);
-                    yield return (frames[s - 1], frames[s], increment, variance);
-                }
+                double increment = _phases.Fits[k].PhaseRad[s] - _phases.Fits[k].PhaseRad[s - 1]
+                    - (_commandedRad[frames[s]] - _commandedRad[frames[s - 1]]);
+                double variance = covariance[s, s] + covariance[s - 1, s - 1] - (2 * covariance[s, s - 1]);
+                yield return (frames[s - 1], frames[s], increment, variance);
             }
         }
     }

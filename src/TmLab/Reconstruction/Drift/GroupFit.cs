@@ -11,6 +11,7 @@ namespace TmLab.Reconstruction.Drift;
 internal sealed class GroupFit
 {
     private const int PixelIterations = 2;
+    private const int FewestPixels = 16;
 
     private readonly int[] _frames;
     private readonly PixelSample _sample;
@@ -64,11 +65,13 @@ internal sealed class GroupFit
     }
 
     /// <summary>One Gauss–Newton step on phases and gains; adds each pixel's squared residual to <paramref name="residual"/>.</summary>
-    public void Improve(CoherenceModel model, double gainSpread, Span<double> residual)
+    /// <returns>The largest change of a phase, radians.</returns>
+    public double Improve(CoherenceModel model, double gainSpread, Span<double> residual)
     {
         var normal = new double[2 * Steps, 2 * Steps];
         var right = new double[2 * Steps];
         var pixel = new PixelEquations(Steps, PhaseRad, Gain);
+        int used = 0;
         for (int p = 0; p < _field.Length; p++)
         {
             if (!double.IsFinite(model.Variance[p]) || Complex.IsNaN(_field[p]))
@@ -83,13 +86,15 @@ internal sealed class GroupFit
             }
 
             residual[p] += pixel.Accumulate(_field[p], 1 / model.Variance[p], normal, right);
+            used++;
         }
 
-        Solve(normal, right, gainSpread);
+        // A group that is saturated nearly everywhere says nothing: its phases stay, and its information is nought.
+        return used < FewestPixels ? 0 : Solve(normal, right, gainSpread);
     }
 
     // The gains get a prior of their known spread; the phases' common constant, which nothing determines, is held.
-    private void Solve(double[,] normal, double[] right, double gainSpread)
+    private double Solve(double[,] normal, double[] right, double gainSpread)
     {
         double prior = 1 / (gainSpread * gainSpread);
         for (int s = 0; s < Steps; s++)
@@ -111,6 +116,7 @@ internal sealed class GroupFit
         double[] step = SmallSymmetric.Solve(normal, right);
         PhaseRad = [.. PhaseRad.Select((t, s) => t + step[s])];
         Gain = [.. Gain.Select((g, s) => g + step[Steps + s])];
+        return step.Take(Steps).Max(Math.Abs);
     }
 
     /// <summary>The equations of one pixel, its field eliminated.</summary>

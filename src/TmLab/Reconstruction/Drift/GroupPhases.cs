@@ -7,7 +7,9 @@ namespace TmLab.Reconstruction.Drift;
 /// <summary>The phases of the frames inside every group, found from a sample of pixels. See <see cref="GroupFit"/> for the model.</summary>
 internal sealed class GroupPhases
 {
-    private const int Rounds = 4;
+    private const int MostRounds = 10;
+    private const double ConvergedRad = 2e-4;
+    private const int FewestPixels = 32;
 
     private readonly PixelSample _sample;
     private readonly ReconstructionSettings _settings;
@@ -67,21 +69,22 @@ internal sealed class GroupPhases
         }
 
         double[]? variance = null;
-        for (int round = 0; round < Rounds; round++)
+        double largestStep = double.PositiveInfinity;
+        for (int round = 0; round < MostRounds && largestStep > ConvergedRad; round++)
         {
-            CoherenceModel? model = FitModel(variance, cancel);
-            if (model is null)
+            CoherenceModel model = FitModel(variance, cancel);
+            if (model.Variance.Count(double.IsFinite) < FewestPixels)
             {
                 return false;
             }
 
-            variance = ImproveAll(model, cancel);
+            (variance, largestStep) = ImproveAll(model, cancel);
         }
 
         return true;
     }
 
-    private CoherenceModel? FitModel(double[]? variance, CancellationToken cancel)
+    private CoherenceModel FitModel(double[]? variance, CancellationToken cancel)
     {
         var backgrounds = new double[Fits.Length][];
         ForEachGroup(k =>
@@ -99,17 +102,18 @@ internal sealed class GroupPhases
             // Before residuals are known, shot noise gives the pixels' relative weights.
             spread[p] = usable ? variance?[p] ?? Math.Max(alpha[p], 1) : double.PositiveInfinity;
         });
-        return spread.Any(double.IsFinite) ? new CoherenceModel(alpha, beta, spread) : null;
+        return new CoherenceModel(alpha, beta, spread);
     }
 
-    /// <summary>One step for every group; returns each pixel's variance about the model.</summary>
-    private double[] ImproveAll(CoherenceModel model, CancellationToken cancel)
+    /// <summary>One step for every group; returns each pixel's variance about the model, and the largest step.</summary>
+    private (double[] Variance, double LargestStepRad) ImproveAll(CoherenceModel model, CancellationToken cancel)
     {
         var residuals = new double[Fits.Length][];
+        var steps = new double[Fits.Length];
         ForEachGroup(k =>
         {
             residuals[k] = new double[_sample.Count];
-            Fits[k].Improve(model, _settings.PowerSpread, residuals[k]);
+            steps[k] = Fits[k].Improve(model, _settings.PowerSpread, residuals[k]);
         }, cancel);
         var variance = new double[_sample.Count];
         for (int p = 0; p < variance.Length; p++)
@@ -125,7 +129,7 @@ internal sealed class GroupPhases
             variance[p] = freedom > 0 ? Math.Max(sum / freedom, 1.0 / 12) : double.PositiveInfinity;
         }
 
-        return variance;
+        return (variance, steps.Max());
     }
 
     private void ForEachGroup(Action<int> action, CancellationToken cancel) => Parallel.For(0, Fits.Length, Options(cancel), action);

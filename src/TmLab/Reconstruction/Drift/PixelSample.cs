@@ -10,6 +10,10 @@ internal sealed class PixelSample
 {
     private const int RunPixels = 64;
 
+    // Fewer pixels for very long measurements, so that the sample stays below 128 MiB. Not a matter of the memory budget: the result
+    // must not depend on it.
+    private const int MostCounts = 1 << 25;
+
     private readonly float[] _counts;
 
     private PixelSample(int frames, int[] pixels)
@@ -30,10 +34,10 @@ internal sealed class PixelSample
     /// <summary>Reads runs of neighbouring pixels spread evenly over the frame; all pixels of a small one.</summary>
     /// <param name="reader">The counts.</param>
     /// <param name="facts">Dark level and full scale.</param>
-    /// <param name="settings">How many pixels, and how much memory.</param>
+    /// <param name="settings">How many pixels.</param>
     public static PixelSample Read(IFrameBlockReader reader, MeasurementFacts facts, ReconstructionSettings settings)
     {
-        int wanted = (int)Math.Clamp(settings.MemoryBytes / 4 / sizeof(float) / reader.FrameCount, 1, settings.DriftPixels);
+        int wanted = Math.Clamp(MostCounts / reader.FrameCount, 1, settings.DriftPixels);
         (int First, int Count)[] runs = Runs(facts.PixelCount, wanted);
         var sample = new PixelSample(reader.FrameCount, [.. runs.SelectMany(r => Enumerable.Range(r.First, r.Count))]);
         int place = 0;

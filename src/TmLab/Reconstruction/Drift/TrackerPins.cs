@@ -50,15 +50,18 @@ internal static class TrackerPins
         return [.. Enumerable.Range(0, groups.Length).Where(k => groups[k].Mode == pattern)];
     }
 
-    // The branch of 2π nearest to what the groups between the two showings let expect.
+    // The branch of 2π nearest to what the groups between the two showings let expect. What all groups have in common is taken for
+    // an error of the steps, not for drift: a constant drift rate cannot be told from it inside the groups.
     private static double Unwrapped(
         Schedule schedule, GroupPhases phases, ImmutableArray<double> commandedRad, TrackerPin before, int group, double time, double wrapped)
     {
-        double expected = before.OffsetRad + (ObservedRate(schedule, phases, commandedRad, before.Group, group) * (time - before.TimeS));
+        double common = ObservedRate(schedule, phases, commandedRad, 0, phases.Groups.Length - 1);
+        double rate = ObservedRate(schedule, phases, commandedRad, before.Group, group) - common;
+        double expected = before.OffsetRad + (rate * (time - before.TimeS));
         return expected + Math.IEEERemainder(wrapped - expected, 2 * Math.PI);
     }
 
-    /// <summary>Mean drift rate inside the groups from one group to another, rad/s, systematic step errors taken off.</summary>
+    /// <summary>Mean drift rate inside the groups from one group to another, rad/s.</summary>
     private static double ObservedRate(Schedule schedule, GroupPhases phases, ImmutableArray<double> commandedRad, int from, int to)
     {
         double moved = 0, time = 0;

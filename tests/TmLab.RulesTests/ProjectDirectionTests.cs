@@ -22,7 +22,8 @@ public sealed class ProjectDirectionTests
     private static readonly Dictionary<string, string[]> AllowedLibraries = new()
     {
         ["TmLab.Numerics"] = ["MathNet.Numerics"],
-        ["TmLab"] = [],
+        // Special functions of the theory curves.
+        ["TmLab"] = ["MathNet.Numerics"],
         ["TmLab.Storage"] = ["PureHDF", "BitMiracle.LibTiff.NET", "SixLabors.ImageSharp", "System.IO.Hashing"],
         ["TmLab.Reporting"] = ["SixLabors.ImageSharp"],
         ["TmLab.View"] = [],

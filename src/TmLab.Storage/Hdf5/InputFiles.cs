@@ -17,7 +17,7 @@ internal static class InputFiles
 
         try
         {
-            return File.OpenHandle(path, FileMode.Open, FileAccess.Read, FileShare.Read | FileShare.Delete, FileOptions.RandomAccess);
+            return File.OpenHandle(path, FileMode.Open, FileAccess.Read, FileShare.Read | FileShare.Delete);
         }
         catch (Exception e) when (e is FileNotFoundException or DirectoryNotFoundException)
         {

@@ -1,11 +1,9 @@
 using System.Collections.Immutable;
 using System.Globalization;
-using System.IO.Hashing;
 using Microsoft.Win32.SafeHandles;
 using PureHDF;
 using PureHDF.VOL.Native;
 using TmLab.Failures;
-using TmLab.Quantities;
 using TmLab.Storage.Hdf5;
 
 namespace TmLab.Storage.StageFiles;
@@ -14,7 +12,7 @@ namespace TmLab.Storage.StageFiles;
 /// Reads a stage file. Headers and small datasets go through the HDF5 library, large contiguous datasets straight from the file.
 /// Whatever is wrong with the file is reported as a <see cref="BadInputException"/> that names file and dataset.
 /// </summary>
-internal sealed class StageFileReader : IDisposable
+internal sealed partial class StageFileReader : IDisposable
 {
     // What a chunked (possibly compressed) small dataset may grow to, whatever its header says.
     private const long MostBytesOfSmallChunked = 1L << 30;
@@ -138,41 +136,6 @@ internal sealed class StageFileReader : IDisposable
     /// <summary>The dimensions of a dataset.</summary>
     public ImmutableArray<long> Shape(string path) =>
         Guard(path, () => Dataset(path).Space.Dimensions.Select(d => checked((long)d)).ToImmutableArray());
-
-    /// <summary>Requires a large dataset to stand at a place.</summary>
-    /// <exception cref="BadInputException">It stands elsewhere.</exception>
-    public void RequirePlace(string path, long offset)
-    {
-        long? found = Guard(path, () => ContiguousPlace.FindOurs(Dataset(path), _stream));
-        if (found != offset)
-        {
-            throw DamagedFiles.Damaged(Path, path, $"stands at byte {found?.ToString(CultureInfo.InvariantCulture) ?? "?"}, not {offset}");
-        }
-    }
-
-    /// <summary>Compares the first and the last block of a large dataset with their stored checksums.</summary>
-    /// <exception cref="BadInputException">They differ.</exception>
-    public void VerifyEnds(string path)
-    {
-        StoredChecksums stored = Checksums(path) ?? throw DamagedFiles.Damaged(Path, path, "is not one run of bytes");
-        VerifyBlock(stored, 0);
-        VerifyBlock(stored, stored.Values.Length - 1);
-    }
-
-    /// <summary>Compares all large datasets with their stored checksums.</summary>
-    /// <exception cref="BadInputException">A block differs; names the dataset and the block.</exception>
-    public void Verify(IEnumerable<string> datasets, IProgress<StageProgress>? progress, CancellationToken cancel)
-    {
-        foreach (StoredChecksums stored in datasets.Where(p => Has(StageFileWriter.ChecksumGroup + p)).Select(Checksums).OfType<StoredChecksums>())
-        {
-            for (int block = 0; block < stored.Values.Length; block++)
-            {
-                cancel.ThrowIfCancellationRequested();
-                VerifyBlock(stored, block);
-                progress?.Report(new StageProgress("checking " + stored.Dataset, block + 1, stored.Values.Length, "blocks"));
-            }
-        }
-    }
 
     /// <summary>Says where the file comes from.</summary>
     public StageProvenance Provenance()
@@ -356,40 +319,6 @@ internal sealed class StageFileReader : IDisposable
         return bytes;
     }
 
-    // Null where another program has stored the dataset in pieces: the checksums are of its bytes in one run.
-    private StoredChecksums? Checksums(string path)
-    {
-        string name = StageFileWriter.ChecksumGroup + path;
-        int blockBytes = Attribute<int>(name, "block_bytes");
-        uint[] values = ReadArray<uint>(name, -1);
-        long bytes = Guard(path, () => RequireStored(path, Dataset(path), Dataset(path).Type.Size));
-        long? offset = Guard(path, () => ContiguousPlace.FindOurs(Dataset(path), _stream));
-        if (offset is null)
-        {
-            return null;
-        }
-
-        if (blockBytes < 1 || values.Length != (bytes + blockBytes - 1) / blockBytes)
-        {
-            throw DamagedFiles.Damaged(Path, name, $"does not fit {path}");
-        }
-
-        return new StoredChecksums(path, offset.Value, bytes, blockBytes, values);
-    }
-
-    private void VerifyBlock(StoredChecksums stored, int block)
-    {
-        long start = (long)block * stored.BlockBytes;
-        byte[] bytes = GC.AllocateUninitializedArray<byte>((int)Math.Min(stored.BlockBytes, stored.ByteCount - start));
-        new ContiguousBlocks<byte>(_file, Path, stored.Dataset, stored.Offset, 1, stored.ByteCount, swapped: false)
-            .Read(0, 1, start, bytes.Length, bytes);
-        if (Crc32.HashToUInt32(bytes) != stored.Values[block])
-        {
-            throw DamagedFiles.Damaged(
-                Path, stored.Dataset, $"is damaged between bytes {stored.Offset + start} and {stored.Offset + start + bytes.Length} of the file");
-        }
-    }
-
     private void Collect(IH5Group group, string prefix, List<DatasetDescription> found)
     {
         foreach (IH5Object child in group.Children())
@@ -422,6 +351,4 @@ internal sealed class StageFileReader : IDisposable
             return DamagedFiles.Guard(Path, place, step);
         }
     }
-
-    private sealed record StoredChecksums(string Dataset, long Offset, long ByteCount, int BlockBytes, uint[] Values);
 }

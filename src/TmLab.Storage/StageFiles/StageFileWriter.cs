@@ -163,7 +163,7 @@ internal sealed class StageFileWriter : IDisposable
         try
         {
             SafeFileHandle file = File.OpenHandle(
-                output.TemporaryPath, FileMode.CreateNew, FileAccess.ReadWrite, FileShare.Read, FileOptions.RandomAccess, end);
+                output.TemporaryPath, FileMode.CreateNew, FileAccess.ReadWrite, FileShare.Read, FileOptions.None, end);
             RandomAccess.SetLength(file, end);
             return file;
         }

@@ -19,8 +19,6 @@ public sealed class DamagedFileTests
         byte[] whole = File.ReadAllBytes(folder.File("m.h5"));
         string cut = folder.File("cut.h5");
 
-        // Without the seal at the very end the file is what another program would have written: still whole.
-        int sealed_ = whole.Length - 1;
         for (int length = 0; length < whole.Length - SealTailBytes - 16; length += length < 600 ? 7 : 97)
         {
             File.WriteAllBytes(cut, whole[..length]);
@@ -28,7 +26,8 @@ public sealed class DamagedFileTests
             Assert.Equal(cut, failure.Problems[0].File);
         }
 
-        File.WriteAllBytes(cut, whole[..sealed_]);
+        // Without the last byte of the seal the file is what another program would have written: still whole.
+        File.WriteAllBytes(cut, whole[..^1]);
         ReadAll(cut);
     }
 
@@ -42,7 +41,7 @@ public sealed class DamagedFileTests
         string damaged = folder.File("damaged.h5");
         int dataEnd = 48 + (4 * size.PixelCount * 2);
         int magic = whole.Length - 8;
-        for (int at = 0; at < magic; at = at == 47 ? dataEnd : at + (at < 48 ? 1 : 13))
+        for (int at = 0; at < magic; at = at == 47 ? dataEnd : at + (at < 48 ? 1 : 29))
         {
             byte[] copy = [.. whole];
             copy[at] ^= 0x41;
@@ -61,7 +60,7 @@ public sealed class DamagedFileTests
         byte[] unsealed = whole[..^1];
         string damaged = folder.File("damaged.h5");
         int refused = 0;
-        for (int at = 0; at < unsealed.Length; at += 11)
+        for (int at = 0; at < unsealed.Length; at += 101)
         {
             byte[] copy = [.. unsealed];
             copy[at] ^= 0x81;

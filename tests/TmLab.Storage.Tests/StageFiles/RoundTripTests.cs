@@ -27,7 +27,7 @@ public sealed class RoundTripTests
                 RequireCounts(reader, frames / 2, frames - (frames / 2), size.PixelCount / 3, size.PixelCount - (size.PixelCount / 3));
                 reader.Verify(null, TestContext.Current.CancellationToken);
             },
-            iter: 25,
+            iter: 15,
             threads: 1);
 
     [Fact]
@@ -44,7 +44,7 @@ public sealed class RoundTripTests
                 RequireRows(reader, rows, columns);
                 reader.Verify(null, TestContext.Current.CancellationToken);
             },
-            iter: 25,
+            iter: 15,
             threads: 1);
 
     [Theory]

@@ -35,7 +35,7 @@ public sealed class ReportTests
         ToolResult result = InProcessTool.Run(new FakeStages(), "reconstruct", "m.h5", "-o", "t.h5");
 
         Assert.StartsWith("Reconstructed m.h5 into t.h5", result.Stdout, StringComparison.Ordinal);
-        Assert.Contains("1.25 rad over 3 trackers", result.Stdout, StringComparison.Ordinal);
+        Assert.Contains("1.25 rad over 3 showings of the tracked pattern", result.Stdout, StringComparison.Ordinal);
         Assert.Contains("0.75 rad from one tracker to the next", result.Stdout, StringComparison.Ordinal);
         Assert.Contains("not known", result.Stdout, StringComparison.Ordinal);
         Assert.Equal(["warning: One pixel is not valid."], result.ErrorLines);

@@ -211,7 +211,7 @@ public sealed class StageFilesTests
             [.. Enumerable.Repeat(0.5f, Rows)],
             [.. Enumerable.Repeat(0.1f, Rows)]),
         new ModeFacts([.. Enumerable.Repeat(true, Columns)], [.. Enumerable.Repeat(0.1f, Columns)]),
-        new DriftFacts(DriftMethod.None, [], [], [], []),
+        DriftFacts.None(0),
         new MatrixQuality(0.5, 10, 19, Columns, false, []));
 
     private static void WriteMatrix(string path)

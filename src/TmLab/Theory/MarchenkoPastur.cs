@@ -176,7 +176,8 @@ public sealed class MarchenkoPastur
             return 1;
         }
 
-        double angle = Math.Acos(Math.Clamp(((2 * x) - a - b) / (b - a), -1, 1));
+        // acos c = 2 atan √((b − x)/(x − a)), which keeps its digits near the edges.
+        double angle = 2 * Math.Atan2(Math.Sqrt(b - x), Math.Sqrt(x - a));
         double edge = Math.Atan(Math.Sqrt(a / b * (b - x) / (x - a)));
 
         // (a + b)/2 = 1 + γ, √(ab) = 1 − γ.

@@ -1,5 +1,5 @@
-using MathNet.Numerics;
 using TmLab.Numerics;
+using TmLab.Numerics.Statistics;
 
 namespace TmLab.Theory;
 
@@ -31,7 +31,7 @@ public static class TracyWidom
         }
 
         (double[] x, double[] weight) = GaussLegendre.Rule(Nodes, s, Infinity);
-        double[] airy = [.. x.Select(SpecialFunctions.AiryAi)], slope = [.. x.Select(SpecialFunctions.AiryAiPrime)];
+        double[] airy = [.. x.Select(AiryFunction.Value)], slope = [.. x.Select(AiryFunction.Slope)];
         var matrix = new double[Nodes, Nodes];
         for (int i = 0; i < Nodes; i++)
         {

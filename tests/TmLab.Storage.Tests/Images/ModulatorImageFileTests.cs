@@ -4,6 +4,7 @@ using SixLabors.ImageSharp.Formats.Bmp;
 using SixLabors.ImageSharp.PixelFormats;
 using TmLab.Failures;
 using TmLab.Quantities;
+using TmLab.Shaping;
 using TmLab.Storage.Images;
 using Xunit;
 

@@ -13,8 +13,20 @@ public sealed class TemporaryFolder : IDisposable
     public IReadOnlyList<string> FileNames =>
         [.. Directory.GetFiles(Path).Select(f => System.IO.Path.GetFileName(f)).Order(StringComparer.Ordinal)];
 
-    /// <summary>A name in it.</summary>
-    public string File(string name) => System.IO.Path.Combine(Path, name);
+    /// <summary>A name in it, which may stand in folders of its own.</summary>
+    public string File(string name)
+    {
+        string path = System.IO.Path.Combine(Path, name);
+        Directory.CreateDirectory(System.IO.Path.GetDirectoryName(path)!);
+        return path;
+    }
+
+    /// <summary>Writes a text file and gives its full name.</summary>
+    public string Write(string name, string text)
+    {
+        System.IO.File.WriteAllText(File(name), text);
+        return File(name);
+    }
 
     /// <inheritdoc/>
     public void Dispose() => Directory.Delete(Path, recursive: true);

@@ -3,6 +3,7 @@ using PureHDF.Filters;
 using TmLab.Failures;
 using TmLab.Quantities;
 using TmLab.Storage.Frames;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.Storage.Tests.Frames;

@@ -3,6 +3,7 @@ using TmLab.Failures;
 using TmLab.Measurement;
 using TmLab.Quantities;
 using TmLab.Storage.Frames;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.Storage.Tests.Frames;

@@ -5,6 +5,7 @@ using CsCheck;
 using TmLab.Failures;
 using TmLab.Quantities;
 using TmLab.Storage.Frames;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.Storage.Tests.Frames;

@@ -6,6 +6,7 @@ using TmLab.Failures;
 using TmLab.Measurement;
 using TmLab.Quantities;
 using TmLab.Storage.Manifest;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.Storage.Tests.Manifest;

@@ -3,6 +3,7 @@ using CsCheck;
 using TmLab.Failures;
 using TmLab.Measurement;
 using TmLab.Storage.Manifest;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.Storage.Tests.Manifest;

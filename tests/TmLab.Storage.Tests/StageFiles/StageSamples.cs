@@ -75,7 +75,11 @@ internal static class StageSamples
             full ? [0.1, 0.2] : [],
             full ? [0, -1.5] : [],
             full ? [1, 0.97] : [],
-            full ? [0.01, 0.02, 0.03] : []),
+            full ? [0.01, 0.02, 0.03] : [],
+            full ? [0.001, double.NaN, 0.003] : [],
+            full ? [0, -0.04] : [],
+            full ? [1, 0.99, 1.01] : [],
+            full ? 0.25 : double.NaN),
         new MatrixQuality(0.7, full ? 12.5 : double.NaN, rows, columns, full, full ? ["a warning: ±", ""] : []));
 
     public static ChannelFacts ChannelFacts(int pixels, int modes, int channels, bool full = true) => new(
@@ -89,7 +93,7 @@ internal static class StageSamples
         [.. Enumerable.Range(0, Math.Min(pixels, modes)).Select(k => 10.0 / (k + 3))],
         channels,
         3.25,
-        new MarchenkoPasturComparison(0.5, 0.0858, 2.914, full ? [0.25, 0.75] : [], full ? [0.4, 1.4] : [], full ? [0.41, 1.39] : [], 0.03),
+        new MarchenkoPasturComparison(0.5, 0.0858, 2.914, full ? [0.25, 0.75] : [], full ? [0.4, 1.4] : [], full ? [0.41, 1.39] : [], 0.03, full),
         "Gram matrix and Hermitian eigenvectors",
         "managed",
         channels == 0 ? double.NaN : 1e-6,

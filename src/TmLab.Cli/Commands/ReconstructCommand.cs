@@ -11,12 +11,14 @@ internal sealed class ReconstructCommand : ToolCommand
 {
     private readonly Argument<string> _input = PathOptions.Input("MEASUREMENT", "The measurement file that 'ingest' wrote.");
     private readonly Option<string> _output = PathOptions.Output("The matrix file to write.");
+    private readonly Option<string> _drift = DriftOption.Create();
 
     public ReconstructCommand(IStages stages, CommandRunner runner)
         : base("reconstruct", "Turn a measurement into its transmission matrix, with the drift removed.", "reconstruct m.h5 -o t.h5")
     {
         Add(_input);
         Add(_output);
+        Add(_drift);
         PathOptions.RefuseSamePath(this, _input, _output);
         SetAction(parse => (int)runner.Run(parse, context => Execute(stages, ReadRequest(parse), context)));
     }
@@ -28,5 +30,6 @@ internal sealed class ReconstructCommand : ToolCommand
         return ReconstructReport.From(request.Input, request.Output, facts, elapsedS);
     }
 
-    private ReconstructRequest ReadRequest(ParseResult parse) => new(parse.GetRequiredValue(_input), parse.GetRequiredValue(_output));
+    private ReconstructRequest ReadRequest(ParseResult parse) =>
+        new(parse.GetRequiredValue(_input), parse.GetRequiredValue(_output), DriftOption.Read(parse, _drift));
 }

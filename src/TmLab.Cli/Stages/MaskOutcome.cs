@@ -1,5 +1,7 @@
 using System.Collections.Immutable;
 using TmLab.Quantities;
+using TmLab.Shaping;
+using TmLab.Storage.Masks;
 
 namespace TmLab.Cli.Stages;
 
@@ -18,4 +20,15 @@ internal sealed record MaskOutcome(
     ImmutableArray<double> TargetEnhancements,
     double PredictedEnhancement,
     double IdealEnhancement,
-    ImmutableArray<string> Warnings);
+    ImmutableArray<string> Warnings)
+{
+    /// <summary>What was written for a request.</summary>
+    public static MaskOutcome From(MaskRequest request, FocusMask mask) => new(
+        request.Output,
+        MaskFile.DescriptionOf(request.Output),
+        request.Targets,
+        [.. mask.Targets.Select(t => t.PredictedEnhancement)],
+        mask.Targets.Average(t => t.PredictedEnhancement),
+        mask.IdealEnhancement,
+        mask.Cautions);
+}

@@ -16,13 +16,14 @@ internal static class Provenance
         Converters = { new JsonStringEnumConverter(JsonNamingPolicy.SnakeCaseLower) },
     };
 
-    /// <summary>Digests the parents and writes down the settings.</summary>
-    /// <param name="context">For progress and cancellation.</param>
+    /// <summary>Begins to digest the parents and writes down the settings.</summary>
+    /// <param name="context">For cancellation.</param>
     /// <param name="parents">Files that the stage reads.</param>
     /// <param name="settings">All that the stage was told.</param>
-    public static StageProvenance Of(StageContext context, ImmutableArray<string> parents, object settings) => new(
-        [.. parents.Select(p => new StageParent(p, FileDigest.Sha256(p, context.Progress, context.Cancellation)))],
+    public static StageProvenance Of(StageContext context, ImmutableArray<string> parents, object settings) => StageProvenance.OfFiles(
+        parents,
         JsonSerializer.Serialize(settings, settings.GetType(), Format),
         VersionFlag.Version,
-        TimeProvider.System.GetUtcNow());
+        TimeProvider.System.GetUtcNow(),
+        context.Cancellation);
 }

@@ -1,4 +1,5 @@
 using System.Collections.Immutable;
+using TmLab.Matrix;
 using TmLab.Quantities;
 
 namespace TmLab.Cli.Stages;
@@ -6,11 +7,11 @@ namespace TmLab.Cli.Stages;
 /// <summary>A measurement folder to be taken into a measurement file.</summary>
 internal sealed record IngestRequest(string Folder, string Output);
 
-/// <summary>A measurement file to be turned into a matrix file.</summary>
-internal sealed record ReconstructRequest(string Input, string Output);
+/// <summary>A measurement file to be turned into a matrix file; the drift is followed in the default way when none is named.</summary>
+internal sealed record ReconstructRequest(string Input, string Output, DriftMethod? Drift = null);
 
-/// <summary>A matrix file to be decomposed into a channel file.</summary>
-internal sealed record ChannelsRequest(string Input, string Output);
+/// <summary>A matrix file to be decomposed into a channel file: all channels, or the leading ones, or with 0 singular values only.</summary>
+internal sealed record ChannelsRequest(string Input, string Output, int? Leading = null);
 
 /// <summary>A matrix file from which to make a mask that focuses on the targets.</summary>
 internal sealed record MaskRequest(string Input, ImmutableArray<CameraPixel> Targets, string Output);

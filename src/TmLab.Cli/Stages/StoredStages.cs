@@ -1,5 +1,6 @@
 using System.Collections.Immutable;
 using TmLab.Channels;
+using TmLab.Cli.Help;
 using TmLab.Cli.Reports;
 using TmLab.Failures;
 using TmLab.Matrix;
@@ -10,6 +11,7 @@ using TmLab.Shaping;
 using TmLab.Storage.AtomicFiles;
 using TmLab.Storage.Ingest;
 using TmLab.Storage.Manifest;
+using TmLab.Storage.Masks;
 using TmLab.Storage.StageFiles;
 
 namespace TmLab.Cli.Stages;
@@ -36,6 +38,7 @@ internal sealed class StoredStages : IStages
         {
             MemoryBytes = context.Settings.MemoryBytes ?? defaults.MemoryBytes,
             Threads = context.Settings.Threads ?? defaults.Threads,
+            Drift = request.Drift ?? defaults.Drift,
         };
         StageProvenance provenance = Provenance.Of(context, [request.Input], settings);
         MeasurementFacts facts = measurement.Facts;
@@ -51,7 +54,7 @@ internal sealed class StoredStages : IStages
     {
         RefuseTaken(request.Output, context);
         using var matrix = new MatrixFileReader(request.Input);
-        var settings = new ChannelSettings();
+        ChannelSettings settings = new() { Leading = request.Leading };
         var analysis = new ChannelAnalysis(matrix, matrix.Facts, request.Input, settings, Engine(context));
         StageProvenance provenance = Provenance.Of(context, [request.Input], settings);
         using var writer = new ChannelFileWriter(
@@ -69,7 +72,9 @@ internal sealed class StoredStages : IStages
         using var matrix = new MatrixFileReader(request.Input);
         ImmutableArray<FocusTarget> targets = [.. request.Targets.Select(t => new FocusTarget(t))];
         FocusMask mask = FocusMask.Make(matrix, matrix.Facts, request.Input, targets);
-        return MaskFiles.Write(request, mask, matrix.Facts, context);
+        var origin = new MaskOrigin(request.Input, matrix.Seal, VersionFlag.Version, TimeProvider.System.GetUtcNow());
+        MaskFile.Write(request.Output, context.Settings.Force, mask, matrix.Facts, origin);
+        return MaskOutcome.From(request, mask);
     }
 
     public ShowReport Describe(ShowRequest request, StageContext context) => StageDescription.Of(request.Input);

@@ -42,15 +42,15 @@ internal static class FileSeal
         RandomAccess.Write(file, seal, end);
     }
 
-    /// <summary>Checks a file's seal. Returns whether it has one.</summary>
+    /// <summary>Checks a file's seal. Returns its checksum, or null when the file has none.</summary>
     /// <exception cref="BadInputException">The seal does not fit the file.</exception>
-    public static bool Check(SafeFileHandle file, string path)
+    public static uint? Check(SafeFileHandle file, string path)
     {
         long length = RandomAccess.GetLength(file);
         Span<byte> tail = stackalloc byte[TailBytes];
         if (length < TailBytes || RandomAccess.Read(file, tail, length - TailBytes) < TailBytes || !tail[16..].SequenceEqual(Magic))
         {
-            return false;
+            return null;
         }
 
         int count = BinaryPrimitives.ReadInt32LittleEndian(tail);
@@ -69,7 +69,7 @@ internal static class FileSeal
             throw DamagedFiles.Damaged(path, null, "is damaged (the checksum of its headers does not match)");
         }
 
-        return true;
+        return expected;
     }
 
     private static ImmutableArray<(long Offset, long Length)>? Regions(ReadOnlySpan<byte> seal, int count, long end)

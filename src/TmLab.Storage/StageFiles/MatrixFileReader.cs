@@ -45,6 +45,12 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
     /// <exception cref="BadInputException">The file is damaged.</exception>
     public TransmissionMatrixFacts Facts => _facts.Value;
 
+    /// <summary>
+    /// A CRC-32 that tells this file from others, as it covers headers and the checksums of the data; null for files rewritten by another
+    /// program. Unlike a digest of all bytes it costs nothing.
+    /// </summary>
+    public uint? Seal => _file.Seal;
+
     /// <summary>Where the file comes from.</summary>
     /// <exception cref="BadInputException">The file is damaged.</exception>
     public StageProvenance Provenance => _file.Provenance();

@@ -27,10 +27,10 @@ internal sealed partial class StageFileReader : IDisposable
     // The HDF5 library reads through one stream, which has one position.
     private readonly Lock _gate = new();
 
-    private StageFileReader(string path, SafeFileHandle file, ObservedStream stream, NativeFile hdf5, bool isSealed)
+    private StageFileReader(string path, SafeFileHandle file, ObservedStream stream, NativeFile hdf5, uint? seal)
     {
         Path = path;
-        IsSealed = isSealed;
+        Seal = seal;
         _file = file;
         _stream = stream;
         _hdf5 = hdf5;
@@ -41,7 +41,10 @@ internal sealed partial class StageFileReader : IDisposable
     public string Path { get; }
 
     /// <summary>Whether the headers' checksum was there and right.</summary>
-    public bool IsSealed { get; }
+    public bool IsSealed => Seal is not null;
+
+    /// <summary>The headers' checksum, which covers the checksums of the data too; null for files rewritten by another program.</summary>
+    public uint? Seal { get; }
 
     /// <summary>The kind of file.</summary>
     public StageFormat Format { get; private set; } = StageFormat.Measurement;
@@ -59,10 +62,10 @@ internal sealed partial class StageFileReader : IDisposable
         try
         {
             RequireWholeHdf5(path, file);
-            bool isSealed = FileSeal.Check(file, path);
+            uint? seal = FileSeal.Check(file, path);
             var stream = new ObservedStream(file, writable: false);
             NativeFile hdf5 = DamagedFiles.Guard(path, null, () => H5File.Open(stream, leaveOpen: false));
-            var reader = new StageFileReader(path, file, stream, hdf5, isSealed);
+            var reader = new StageFileReader(path, file, stream, hdf5, seal);
             reader.RequireFormat(expected);
             return reader;
         }

@@ -33,6 +33,7 @@ internal sealed class StageFileWriter : IDisposable
     private readonly AtomicOutput _output;
     private readonly SafeFileHandle _file;
     private readonly StageFormat _format;
+    private readonly StageProvenance _provenance;
     private readonly ImmutableArray<ReservedDataset> _reserved;
     private readonly Hdf5Tree _tree = new();
     private bool _completed;
@@ -44,7 +45,11 @@ internal sealed class StageFileWriter : IDisposable
         _file = file;
         _format = format;
         _reserved = reserved;
-        AddProvenance(provenance);
+        _provenance = provenance;
+        foreach (ReservedDataset dataset in reserved)
+        {
+            _tree.Add(dataset.Path, dataset.Describe(), dataset.Units);
+        }
     }
 
     /// <summary>Begins a file.</summary>
@@ -119,6 +124,7 @@ internal sealed class StageFileWriter : IDisposable
     public void Complete()
     {
         RequireAllWritten();
+        AddProvenance(_provenance);
         foreach (ReservedDataset dataset in _reserved)
         {
             string path = ChecksumGroup + dataset.Path;
@@ -175,13 +181,9 @@ internal sealed class StageFileWriter : IDisposable
         }
     }
 
+    // Last, as the parents' digests may still be under way while the data are written.
     private void AddProvenance(StageProvenance provenance)
     {
-        foreach (ReservedDataset dataset in _reserved)
-        {
-            _tree.Add(dataset.Path, dataset.Describe(), dataset.Units);
-        }
-
         AddAttribute("/", "format", _format.Name);
         AddAttribute("/", "format_version", _format.Version);
         AddAttribute("/", "created_utc", provenance.CreatedUtc.ToString("O", CultureInfo.InvariantCulture));

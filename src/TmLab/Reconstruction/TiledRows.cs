@@ -13,9 +13,6 @@ namespace TmLab.Reconstruction;
 /// </summary>
 internal sealed class TiledRows
 {
-    // Beyond this a tile no longer fits the last-level cache and nothing is gained.
-    private const long LargestTileBytes = 32 << 20;
-
     private readonly IFrameBlockReader _reader;
     private readonly IPatternBasis _basis;
     private readonly FrameWeightTable _weights;
@@ -42,7 +39,7 @@ internal sealed class TiledRows
         get
         {
             long bytesPerPixel = (2L * _reader.FrameCount) + (8L * _basis.ModeCount);
-            long budget = Math.Min(_settings.MemoryBytes / Math.Max(1, _settings.Threads), LargestTileBytes);
+            long budget = Math.Min(_settings.MemoryBytes / Math.Max(1, _settings.Threads), _settings.LargestTileBytes);
             long fitting = budget / bytesPerPixel / TileKernel.SmallestLanes * TileKernel.SmallestLanes;
             return (int)Math.Clamp(fitting, TileKernel.SmallestLanes, _pixels);
         }

@@ -169,10 +169,10 @@ public sealed class AtomicOutputTests
         File.WriteAllText(folder.File("plain"), "");
         Assert.Equal(
             OutputFailure.NotWritable,
-            Assert.Throws<OutputException>(() => AtomicOutput.Begin(folder.File("missing/a.json"), false)).Failure);
+            Assert.Throws<OutputException>(() => AtomicOutput.Begin(Path.Combine(folder.Path, "missing", "a.json"), false)).Failure);
         Assert.Equal(
             OutputFailure.NotWritable,
-            Assert.Throws<OutputException>(() => AtomicOutput.Begin(folder.File("plain/a.json"), false)).Failure);
+            Assert.Throws<OutputException>(() => AtomicOutput.Begin(Path.Combine(folder.Path, "plain", "a.json"), false)).Failure);
         Assert.Equal(["plain"], folder.FileNames);
     }
 

@@ -48,6 +48,7 @@ internal sealed class MatrixAssessment
         int pixels = _facts.PixelCount;
         MeasurementManifest manifest = _facts.Manifest;
         double[] rowVariance = RowVariance();
+        double meanGain = _modeGain.Average();
         return new TransmissionMatrixFacts(
             manifest.Title,
             manifest.WavelengthNm,
@@ -61,7 +62,7 @@ internal sealed class MatrixAssessment
                 [.. Enumerable.Range(0, pixels).Select(p => p % width)],
                 [.. _pixels.Valid],
                 [.. _survey.Visibility],
-                [.. rowVariance.Select(v => (float)Math.Sqrt(v * _modeGain.Average()))]),
+                [.. rowVariance.Select(v => (float)Math.Sqrt(v * meanGain))]),
             new ModeFacts([.. _modeGain.Select(_ => true)], ModeNoise(rowVariance)),
             _drift,
             Quality(rowVariance));

@@ -46,6 +46,16 @@ public sealed class MatrixReconstructionTests
     }
 
     [Fact]
+    public void Custom_patterns_that_do_not_span_the_modes_are_warned_of()
+    {
+        ImmutableArray<Complex> patterns = [.. Enumerable.Range(0, 16 * 16).Select(i => new Complex(i / 16 % 8 == i % 8 ? 1 : 0, 0))];
+        var modes = new ModeDescription(BasisKind.Custom, HadamardOrdering.Natural, 16, new GridShape(4, 4), "b.npy", null);
+        var bench = new ExactBench(modes, Schedule.ModeMajor(16, 4), Size, 2, customPatterns: patterns);
+        (_, TransmissionMatrixFacts facts) = Reconstruct(bench, new ReconstructionSettings());
+        Assert.Contains(facts.Quality.Warnings, w => w.Contains("nearly dependent", StringComparison.Ordinal));
+    }
+
+    [Fact]
     public void Drift_that_the_trackers_show_is_removed_and_its_path_reported()
     {
         static double Drift(ScheduledFrame f) => 0.02 * f.TimeS;

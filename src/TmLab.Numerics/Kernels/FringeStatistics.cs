@@ -1,3 +1,4 @@
+using System.Collections.Immutable;
 using System.Numerics;
 using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
@@ -10,7 +11,12 @@ namespace TmLab.Numerics.Kernels;
 /// <param name="FieldImaginary">Im w.</param>
 /// <param name="Cosine">cos θ_s: the model is a + 2 (Re D cos θ_s − Im D sin θ_s).</param>
 /// <param name="Sine">sin θ_s.</param>
-public sealed record FringeWeights(float[] Background, float[] FieldReal, float[] FieldImaginary, float[] Cosine, float[] Sine);
+public sealed record FringeWeights(
+    ImmutableArray<float> Background,
+    ImmutableArray<float> FieldReal,
+    ImmutableArray<float> FieldImaginary,
+    ImmutableArray<float> Cosine,
+    ImmutableArray<float> Sine);
 
 /// <summary>
 /// Sums over groups, pixel by pixel, of what tells a good pixel from a bad one: modulation depth 2|D|/(a − dark), squared residual

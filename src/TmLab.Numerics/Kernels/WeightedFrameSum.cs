@@ -61,6 +61,30 @@ public static class WeightedFrameSum
         }
     }
 
+    /// <summary>Demodulates a tile: every pattern's sum over the planes' lanes, as <see cref="Run"/> does for one pattern.</summary>
+    /// <param name="counts">Counts, shape (frame, pixel) with <paramref name="stride"/> pixels from one frame to the next.</param>
+    /// <param name="stride">Elements from one frame to the next.</param>
+    /// <param name="weights">All patterns.</param>
+    /// <param name="planes">Takes the sums, each in its pattern's row.</param>
+    /// <exception cref="ArgumentException">A frame lies outside the counts or a row outside the planes.</exception>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
+    public static void RunAll(ReadOnlySpan<ushort> counts, int stride, FrameWeights weights, in ModePlanes planes)
+    {
+        Preconditions.InRange(((long)weights.LargestFrame * stride) + planes.Lanes, planes.Lanes, counts.Length);
+        Preconditions.InRange(weights.LargestRow, 0, planes.Rows - 1);
+        int[] start = weights.Start;
+        for (int k = 0; k < weights.PlaneRow.Length; k++)
+        {
+            int row = weights.PlaneRow[k] * planes.Lanes;
+            ReadOnlySpan<int> frames = weights.Frame.AsSpan(start[k], start[k + 1] - start[k]);
+            ReadOnlySpan<Complex64> factors = weights.Weight.AsSpan(start[k], frames.Length);
+            for (int p = 0; p < planes.Lanes; p += Vector<ushort>.Count)
+            {
+                RunStep(counts, stride, frames, factors, p, planes.Real[row..], planes.Imaginary[row..]);
+            }
+        }
+    }
+
     // One register of counts: widened to two registers of singles, multiplied and added without fused operations, so that the
     // result does not depend on the instruction set.
     [MethodImpl(MethodImplOptions.AggressiveInlining)]

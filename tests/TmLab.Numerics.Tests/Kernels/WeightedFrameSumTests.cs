@@ -34,6 +34,33 @@ public sealed class WeightedFrameSumTests
     }
 
     [Fact]
+    public void All_patterns_at_once_give_each_patterns_sum_in_its_row()
+    {
+        var random = new Random(2);
+        int lanes = 3 * ModePlanes.LaneMultiple, stride = lanes + 7;
+        using var counts = new GuardedMemory<ushort>((8 * stride) + lanes);
+        foreach (ref ushort count in counts.Span)
+        {
+            count = (ushort)random.Next(65536);
+        }
+
+        PatternWeights[] patterns = [.. new[] { 2, 0, 1 }.Select(row => new PatternWeights(
+            row,
+            [.. Enumerable.Range(0, 3 + row).Select(s => (row + (2 * s)) % 9)],
+            [.. Enumerable.Range(0, 3 + row).Select(_ => new Complex64(random.NextSingle(), random.NextSingle()))]))];
+        using GuardedMemory<float> re = new(3 * lanes), im = new(3 * lanes), expectedRe = new(lanes), expectedIm = new(lanes);
+        var planes = new ModePlanes(3, lanes, re.Span, im.Span, re.Span, im.Span);
+        WeightedFrameSum.RunAll(counts.Span, stride, new FrameWeights(patterns), planes);
+        foreach (PatternWeights pattern in patterns)
+        {
+            WeightedFrameSum.RunScalar(
+                counts.Span, stride, pattern.Frames.AsSpan(), pattern.Weights.AsSpan(), expectedRe.Span, expectedIm.Span);
+            Assert.True(expectedRe.Span.SequenceEqual(planes.RealRow(pattern.PlaneRow)));
+            Assert.True(expectedIm.Span.SequenceEqual(planes.ImaginaryRow(pattern.PlaneRow)));
+        }
+    }
+
+    [Fact]
     public void A_frame_outside_the_counts_is_refused()
     {
         var counts = new ushort[64];

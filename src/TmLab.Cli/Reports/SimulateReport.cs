@@ -33,7 +33,7 @@ internal sealed record SimulateReport(
         outcome.FrameCount,
         outcome.FrameSize.Width,
         outcome.FrameSize.Height,
-        outcome.Bench.Medium.ToString(),
+        outcome.Medium,
         outcome.Bench.MeanSignalElectrons,
         outcome.Bench.Reference.IntensityRatio,
         outcome.Bench.Grain.WidthPixels,

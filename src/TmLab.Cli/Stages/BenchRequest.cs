@@ -72,6 +72,14 @@ internal sealed record BenchRequest
 
     public StrayLight? Stray { get; init; }
 
+    /// <summary>The medium, for people.</summary>
+    public string MediumInWords => Medium switch
+    {
+        MediumKind.Slab => FormattableString.Invariant($"diffusive slab, mean transmittance {MeanTransmittance}"),
+        MediumKind.Diffuser => FormattableString.Invariant($"thin diffuser, {ThicknessMacroPixels} macro-pixels thick"),
+        _ => "independent Gaussian elements",
+    };
+
     /// <summary>The bench for a measurement.</summary>
     /// <param name="manifest">The measurement's manifest, with the frame size.</param>
     /// <param name="plan">What its plan expects; null where it was not planned.</param>

@@ -8,7 +8,8 @@ namespace TmLab.Cli.Stages;
 /// <param name="Manifest">The manifest that was written.</param>
 /// <param name="FrameSize">The frames' size.</param>
 /// <param name="FrameCount">Number of frames.</param>
+/// <param name="Medium">The medium in words.</param>
 /// <param name="Bench">The bench.</param>
 /// <param name="DriftRangeRad">Largest less smallest true phase.</param>
 internal sealed record SimulateOutcome(
-    MeasurementManifest Manifest, ImageSize FrameSize, int FrameCount, BenchSettings Bench, double DriftRangeRad);
+    MeasurementManifest Manifest, ImageSize FrameSize, int FrameCount, string Medium, BenchSettings Bench, double DriftRangeRad);

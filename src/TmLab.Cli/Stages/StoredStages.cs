@@ -44,7 +44,7 @@ internal sealed class StoredStages : IStages
         MeasurementManifest written = SimulatedFolder.Write(
             request.Output, context.Settings.Force, plan, bench, request.Frames, Threads(context), context.Progress, context.Cancellation);
         double range = bench.Truth.DriftPhaseRad.Max() - bench.Truth.DriftPhaseRad.Min();
-        return new SimulateOutcome(written, bench.FrameSize, bench.FrameCount, settings, range);
+        return new SimulateOutcome(written, bench.FrameSize, bench.FrameCount, request.Bench.MediumInWords, settings, range);
     }
 
     public MeasurementFacts Ingest(IngestRequest request, StageContext context)

@@ -13,27 +13,32 @@ internal sealed class BudgetModel
 {
     // As many pixels as the reconstruction follows the phases with.
     private const int DriftPixels = 1024;
-    private const int PanelPhases = 1024;
+    private const int PanelPhases = 512;
 
     private readonly PlanSettings _settings;
     private readonly IPatternBasis _basis;
     private readonly double[] _power;
+    private readonly double _panelEfficiency;
 
     /// <summary>Takes settings that passed their checks; the basis is looked at once for all budgets of the same patterns.</summary>
     public BudgetModel(PlanSettings settings)
-        : this(settings, PatternBases.Create(settings.Modes, settings.CustomPatterns), null)
-    {
-    }
-
-    private BudgetModel(PlanSettings settings, IPatternBasis basis, double[]? power)
     {
         _settings = settings;
-        _basis = basis;
-        _power = power ?? PatternPower.Of(basis);
+        _basis = PatternBases.Create(settings.Modes, settings.CustomPatterns);
+        _power = PatternPower.Of(_basis);
+        _panelEfficiency = PanelEfficiency(settings);
     }
 
-    /// <summary>The model for other settings of the same patterns.</summary>
-    public BudgetModel With(PlanSettings settings) => new(settings, _basis, _power);
+    private BudgetModel(PlanSettings settings, BudgetModel samePatterns)
+    {
+        _settings = settings;
+        _basis = samePatterns._basis;
+        _power = samePatterns._power;
+        _panelEfficiency = settings.Steps == samePatterns._settings.Steps ? samePatterns._panelEfficiency : PanelEfficiency(settings);
+    }
+
+    /// <summary>The model for other settings of the same patterns on the same panel.</summary>
+    public BudgetModel With(PlanSettings settings) => new(settings, this);
 
     /// <summary>The budget of a schedule of these settings.</summary>
     public ErrorBudget Of(Schedule schedule)
@@ -46,7 +51,7 @@ internal sealed class BudgetModel
             DriftVariance(schedule),
             PhaseErrorGain(showings),
             FieldCorrelation(schedule),
-            PanelEfficiency(),
+            _panelEfficiency,
             SaturationModel.Share(_settings.ReferenceElectrons, _settings.SignalElectrons, _settings.Camera.SaturationElectrons),
             4 * Math.Sqrt(WalkRate * LongestGapS(schedule)),
             _basis.ModeCount);
@@ -115,16 +120,14 @@ internal sealed class BudgetModel
     }
 
     /// <summary>
-    /// Variance of the change of phase from the first to the last frame of a mode: of S counts a pixel three go into the pixel's own
-    /// unknowns. With three steps nothing is left to measure it with.
+    /// Variance of the change of phase from the first to the last frame of a mode: of S counts a pixel two go into the pixel's field;
+    /// the background is bound to it by the coherence of the light, which the reconstruction makes use of.
     /// </summary>
-    private double MeasuredVariance(int pattern) => _settings.Steps > 3
-        ? 2 * FrameVariance(pattern) * _settings.Steps / (_settings.Steps - 3)
-        : double.PositiveInfinity;
+    private double MeasuredVariance(int pattern) => 2 * FrameVariance(pattern) * _settings.Steps / (_settings.Steps - 2);
 
     /// <summary>Variance where a measurement and an expectation are both at hand.</summary>
     private static double Combine(double measured, double expected) =>
-        double.IsInfinity(measured) ? expected : expected == 0 ? 0 : measured * expected / (measured + expected);
+        expected == 0 ? 0 : measured * expected / (measured + expected);
 
     /// <summary>Lengths of the runs of modes between trackers.</summary>
     private static IEnumerable<int> RunsOfModes(Schedule schedule)
@@ -165,28 +168,27 @@ internal sealed class BudgetModel
             : schedule.Modes.Average(g => g.Frames.Average(f => Math.Exp(-(schedule.Frames[f].TimeS - start) / _settings.DecorrelationTimeS)));
     }
 
-    /// <summary>sinc²(1/L) for L even levels and patterns of all phases; exact for the phases that the patterns need.</summary>
-    private double PanelEfficiency()
+    /// <summary>sinc²(1/L) for L even levels and patterns of all phases; exact for the phases that Hadamard patterns need.</summary>
+    private static double PanelEfficiency(PlanSettings settings)
     {
-        if (_settings.Modulator.Kind == ModulatorKind.Amplitude)
+        if (settings.Modulator.Kind == ModulatorKind.Amplitude)
         {
             return 1;
         }
 
-        var scale = new GrayScale(_settings.PhaseLut);
-        double[] needed = [.. NeededPhases()];
-        double[] errors = [.. needed.Select(p => scale.Nearest(p).PhaseRad - p)];
+        var scale = new GrayScale(settings.PhaseLut);
+        double[] errors = [.. NeededPhases(settings).Select(p => scale.Nearest(p).PhaseRad - p)];
         return Squared(errors.Average(Math.Cos)) + Squared(errors.Average(Math.Sin));
     }
 
-    private IEnumerable<double> NeededPhases()
+    private static IEnumerable<double> NeededPhases(PlanSettings settings)
     {
-        double[] steps = _settings.StepDevice == StepDevice.Panel
-            ? [.. Enumerable.Range(0, _settings.Steps).Select(s => 2 * Math.PI * s / _settings.Steps)]
-            : [0];
-        double[] ofPatterns = _settings.Modes.Basis is BasisKind.Hadamard
-            ? [0, Math.PI]
-            : [.. Enumerable.Range(0, PanelPhases).Select(i => 2 * Math.PI * i / (PanelPhases + 0.5))];
-        return steps.SelectMany(s => ofPatterns.Select(p => s + p));
+        if (settings.Modes.Basis != BasisKind.Hadamard)
+        {
+            return Enumerable.Range(0, PanelPhases).Select(i => 2 * Math.PI * (i + 0.5) / PanelPhases);
+        }
+
+        int steps = settings.StepDevice == StepDevice.Panel ? settings.Steps : 1;
+        return Enumerable.Range(0, steps).SelectMany(s => new[] { 0, Math.PI }.Select(p => (2 * Math.PI * s / steps) + p));
     }
 }

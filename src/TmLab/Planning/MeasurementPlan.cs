@@ -38,6 +38,9 @@ public sealed record MeasurementPlan(
 
     private const double SaturationWarning = 1e-3;
 
+    // Below it the phases of the frames are lost in the noise now and then, which the error budget does not model.
+    private const double FaintSignalToNoise = 5;
+
     /// <summary>Size of the frames on disk, bytes.</summary>
     public long FrameBytes => (long)Schedule.Frames.Length * Settings.Camera.Size.PixelCount * (Manifest.Frames.Pixel == RawPixelFormat.UInt8 ? 1 : 2);
 
@@ -107,9 +110,9 @@ public sealed record MeasurementPlan(
             yield return "Without dark frames a changing laser power leaves a share of the dark level in the matrix.";
         }
 
-        if (budget.SignalToNoise < 1)
+        if (budget.SignalToNoise < FaintSignalToNoise)
         {
-            yield return FormattableString.Invariant($"Signal to noise is {budget.SignalToNoise:G2}: a mask will focus less than half of what the number of modes promises.");
+            yield return FormattableString.Invariant($"Signal to noise is {budget.SignalToNoise:G2}: so faint a signal makes the prediction itself optimistic by some hundredths. Use more light or more steps.");
         }
     }
 }

@@ -9,6 +9,8 @@ namespace TmLab.Tests.Planning;
 
 public sealed class MeasurementPlanTests
 {
+    private const int Plans = 40;
+
     private static readonly Gen<PlanSettings> s_settings =
         Gen.Select(Gen.Int[0, 6], Gen.Int[3, 7], Gen.Double[0, 2], Gen.Bool, Gen.Int[0, 3]).Select((bits, steps, drift, isHadamard, other) =>
         {
@@ -36,7 +38,7 @@ public sealed class MeasurementPlanTests
             && stepped[^1] == FrameRole.Tracker
             && ScheduleChecks.Check(plan.Schedule.Frames, plan.Manifest.Modes, "plan").IsEmpty
             && plan.FrameBytes == (long)plan.Schedule.Frames.Length * 64 * 64 * 2;
-    });
+    }, iter: Plans);
 
     [Fact]
     public void Predicted_fidelities_lie_between_nought_and_one_and_the_parts_multiply() => s_settings.Sample(settings =>
@@ -44,7 +46,7 @@ public sealed class MeasurementPlanTests
         ErrorBudget budget = MeasurementPlan.Make(settings).Budget;
         double product = budget.NoiseFidelity * budget.DriftFidelity * budget.DecorrelationFidelity * budget.PanelEfficiency;
         return budget.Fidelity is > 0 and <= 1 && Math.Abs(product - budget.Fidelity) < 1e-12 && budget.SaturatedShare is >= 0 and <= 1;
-    });
+    }, iter: Plans);
 
     [Fact]
     public void The_chosen_spacing_keeps_the_phase_between_trackers_below_a_quarter_turn_or_warns() => s_settings.Sample(settings =>
@@ -53,7 +55,7 @@ public sealed class MeasurementPlanTests
         return plan.Spacing.IsAmbiguous
             ? plan.Spacing.EveryModes == 1 && plan.Warnings.Any(w => w.Contains("unwrapped wrongly", StringComparison.Ordinal))
             : plan.Budget.TrackerGapRad <= (Math.PI / 2) + 1e-9;
-    });
+    }, iter: Plans);
 
     /// <summary>Shot-limited interferometry: SNR = S · I_s for a reference much brighter than the signal (derived in Yilmaz, Vos and Mosk, Biomed. Opt. Express 4, 1759 (2013): the number of detected photoelectrons decides).</summary>
     [Fact]

@@ -15,6 +15,7 @@ internal sealed class MatrixAssessment
     private readonly PixelJudgement _pixels;
     private readonly double[] _rowEnergy;
     private readonly double[] _modeGain;
+    private readonly double _patternCondition;
 
     private MatrixAssessment(
         MeasurementFacts facts,
@@ -27,6 +28,7 @@ internal sealed class MatrixAssessment
         ReconstructionSettings settings)
     {
         (_facts, _settings, _drift, _survey, _pixels, _rowEnergy) = (facts, settings, drift, survey, pixels, rowEnergy);
+        _patternCondition = basis is CustomBasis custom ? custom.Condition : 1;
         // Variance of T[p, n] for unit variance of the counts of pixel p.
         _modeGain = [.. Enumerable.Range(0, basis.ModeCount).Select(n => basis.NoiseVariance(n, weights.ColumnVariance))];
     }
@@ -48,6 +50,7 @@ internal sealed class MatrixAssessment
         int pixels = _facts.PixelCount;
         MeasurementManifest manifest = _facts.Manifest;
         double[] rowVariance = RowVariance();
+        double meanGain = _modeGain.Average();
         return new TransmissionMatrixFacts(
             manifest.Title,
             manifest.WavelengthNm,
@@ -61,7 +64,7 @@ internal sealed class MatrixAssessment
                 [.. Enumerable.Range(0, pixels).Select(p => p % width)],
                 [.. _pixels.Valid],
                 [.. _survey.Visibility],
-                [.. rowVariance.Select(v => (float)Math.Sqrt(v * _modeGain.Average()))]),
+                [.. rowVariance.Select(v => (float)Math.Sqrt(v * meanGain))]),
             new ModeFacts([.. _modeGain.Select(_ => true)], ModeNoise(rowVariance)),
             _drift,
             Quality(rowVariance));
@@ -112,6 +115,11 @@ internal sealed class MatrixAssessment
                 yield return FormattableString.Invariant(
                     $"The phase moved by {gap:F2} rad from the tracker at {_drift.TrackerTimeS[k - 1]:F2} s to that at {_drift.TrackerTimeS[k]:F2} s: near π it cannot be unwrapped. Show trackers more often.");
             }
+        }
+
+        if (_patternCondition > CustomBasis.LargestCondition)
+        {
+            yield return "The custom patterns are nearly dependent: what they do not tell apart is missing from the matrix. Choose patterns that span all modes.";
         }
 
         if (valid == 0)

@@ -11,9 +11,9 @@ internal sealed class PixelSample
 {
     private const int RunPixels = 64;
 
-    // Fewer pixels for very long measurements, so that the sample stays below 256 MiB. Not a matter of the memory budget: the result
+    // Fewer pixels for very long measurements, so that the sample stays below 128 MiB. Not a matter of the memory budget: the result
     // must not depend on it.
-    private const int MostCounts = 1 << 25;
+    private const int MostCounts = 1 << 24;
 
     private readonly double[] _counts;
 

@@ -25,7 +25,7 @@ internal sealed class BudgetModel
     {
         _settings = settings;
         _basis = PatternBases.Create(settings.Modes, settings.CustomPatterns);
-        _power = PatternPower.Of(_basis);
+        _power = PatternPower.Of(_basis, settings.Modes.Basis);
         _panelEfficiency = PanelEfficiency(settings);
     }
 

@@ -1,4 +1,5 @@
 using System.Numerics;
+using TmLab.Measurement;
 using TmLab.Measurement.Bases;
 
 namespace TmLab.Planning;
@@ -10,8 +11,13 @@ internal static class PatternPower
     private const int SampledModes = 32;
 
     /// <summary>P_k = Σ_n |B[k, n]|²: pattern k has P_k / N of the light of all macro-pixels.</summary>
-    public static double[] Of(IPatternBasis basis) =>
-        [.. Enumerable.Range(0, basis.PatternCount).Select(k => Enumerable.Range(0, basis.ModeCount).Sum(n => SquaredMagnitude(basis.Element(k, n))))];
+    public static double[] Of(IPatternBasis basis, BasisKind kind) => kind switch
+    {
+        BasisKind.Hadamard or BasisKind.Fourier => [.. Enumerable.Repeat((double)basis.ModeCount, basis.PatternCount)],
+        BasisKind.Pixel => [.. Enumerable.Repeat(1.0, basis.PatternCount)],
+        BasisKind.HadamardBinary => [.. Enumerable.Range(0, basis.PatternCount).Select(k => basis.PlaneRow(k) == 0 ? basis.ModeCount : basis.ModeCount / 2.0)],
+        _ => [.. Enumerable.Range(0, basis.PatternCount).Select(k => Enumerable.Range(0, basis.ModeCount).Sum(n => SquaredMagnitude(basis.Element(k, n))))],
+    };
 
     /// <summary>Σ_n var T[·, n] for independent errors of the columns with the variances given.</summary>
     public static double TotalVariance(IPatternBasis basis, double[] columnVariance)

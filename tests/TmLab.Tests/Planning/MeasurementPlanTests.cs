@@ -1,6 +1,7 @@
 using CsCheck;
 using TmLab.Failures;
 using TmLab.Measurement;
+using TmLab.Measurement.Bases;
 using TmLab.Planning;
 using TmLab.Quantities;
 using Xunit;
@@ -135,6 +136,19 @@ public sealed class MeasurementPlanTests
         Assert.True(Of("twice the light").FidelityChange > 0);
         Assert.True(Of("half the drift").FidelityChange > 0);
         Assert.Equal(2 * plan.DurationS, Of("exposure twice as long").DurationS, 1e-9);
+    }
+
+    [Theory]
+    [InlineData(BasisKind.Hadamard)]
+    [InlineData(BasisKind.HadamardBinary)]
+    [InlineData(BasisKind.Fourier)]
+    [InlineData(BasisKind.Pixel)]
+    public void The_light_of_a_pattern_is_the_sum_over_its_elements(BasisKind kind)
+    {
+        var modes = new ModeDescription(kind, HadamardOrdering.Sequency, 16, new GridShape(4, 4), null, null);
+        IPatternBasis basis = PatternBases.Create(modes, []);
+        double[] summed = PatternPower.Of(basis, BasisKind.Custom);
+        Assert.All(PatternPower.Of(basis, kind).Zip(summed), p => Assert.Equal(p.Second, p.First, 1e-9));
     }
 
     [Fact]

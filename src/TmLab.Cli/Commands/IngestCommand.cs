@@ -50,7 +50,7 @@ internal sealed class IngestCommand : ToolCommand
         bool merges = result.GetResult(_merge) is { Tokens.Count: > 0 };
         if (hasFolder == merges)
         {
-            result.AddError(merges ? "give either FOLDER or --merge with two folders, not both" : "give FOLDER, or --merge with two folders");
+            result.AddError(merges ? "give either FOLDER or --merge with two folders, not both" : "Required argument 'FOLDER' missing (or --merge with two folders)");
         }
     }
 }

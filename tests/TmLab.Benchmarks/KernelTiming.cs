@@ -60,7 +60,7 @@ internal static class KernelTiming
         float[] scale = [.. Enumerable.Repeat(1f, size.PixelCount)];
         var tiles = new TiledRows(frames, kernelCase.Basis, kernelCase.Weights, dark, scale, new ReconstructionSettings());
         double[] seconds = [.. Enumerable.Range(0, WarmUpRounds + options.Rounds).Select(_ => Time(tiles, rows)).Skip(WarmUpRounds).Order()];
-        return new Result(seconds[seconds.Length / 2], seconds[0], tiles.TilePixels);
+        return new Result(seconds[seconds.Length / 2], seconds[0], tiles.Plan.TilePixels);
     }
 
     private static double Time(TiledRows tiles, RowsInMemory rows)

@@ -61,6 +61,8 @@ internal static class CommandLine
         ToolCommand[] commands =
         [
             new DemoCommand(stages, runner),
+            new PlanCommand(stages, runner),
+            new SimulateCommand(stages, runner),
             new IngestCommand(stages, runner),
             new ReconstructCommand(stages, runner),
             new ChannelsCommand(stages, runner),

@@ -6,7 +6,7 @@ namespace TmLab.EndToEndTests;
 
 public sealed class HelpTests
 {
-    public static TheoryData<string> Commands => ["demo", "ingest", "reconstruct", "channels", "mask", "run", "show", "about"];
+    public static TheoryData<string> Commands => ["demo", "plan", "simulate", "ingest", "reconstruct", "channels", "mask", "run", "show", "about"];
 
     [Fact]
     public void The_program_s_help_lists_every_command_and_ends_with_an_example()

@@ -9,8 +9,8 @@ public sealed partial class FolderOrderTests
 {
     private static readonly string[] Order =
     [
-        "Failures", "Quantities", "Measurement", "Matrix", "Reconstruction", "Theory", "Channels", "Shaping", "Simulation",
-        "Planning", "Summaries",
+        "Failures", "Quantities", "Measurement", "Matrix", "Reconstruction", "Theory", "Channels", "Shaping", "Planning",
+        "Simulation", "Summaries",
     ];
 
     public static TheoryData<string> Folders =>

@@ -11,6 +11,10 @@ namespace TmLab.Cli.Stages;
 /// </summary>
 internal interface IStages
 {
+    PlanOutcome Plan(PlanRequest request, StageContext context);
+
+    SimulateOutcome Simulate(SimulateRequest request, StageContext context);
+
     MeasurementFacts Ingest(IngestRequest request, StageContext context);
 
     TransmissionMatrixFacts Reconstruct(ReconstructRequest request, StageContext context);

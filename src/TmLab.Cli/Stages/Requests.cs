@@ -1,11 +1,20 @@
 using System.Collections.Immutable;
 using TmLab.Matrix;
+using TmLab.Measurement;
+using TmLab.Planning;
 using TmLab.Quantities;
 
 namespace TmLab.Cli.Stages;
 
-/// <summary>A measurement folder to be taken into a measurement file.</summary>
-internal sealed record IngestRequest(string Folder, string Output);
+/// <summary>A measurement folder to be taken into a measurement file, joined with a second one where that is named.</summary>
+internal sealed record IngestRequest(string Folder, string Output, string? Second = null);
+
+/// <summary>A measurement to be planned; names of files to read are null where they were not given.</summary>
+internal sealed record PlanRequest(
+    string Output, PlanSettings Settings, string? Patterns, string? Lut, string? Flatness, string? Repair, string? Measurement);
+
+/// <summary>A planned measurement whose frames are to be simulated.</summary>
+internal sealed record SimulateRequest(string Input, string Output, FrameStorageKind Frames, BenchRequest Bench);
 
 /// <summary>A measurement file to be turned into a matrix file; the drift is followed in the default way when none is named.</summary>
 internal sealed record ReconstructRequest(string Input, string Output, DriftMethod? Drift = null);

@@ -7,12 +7,16 @@ using TmLab.Failures;
 using TmLab.Matrix;
 using TmLab.Measurement;
 using TmLab.Numerics.LinearAlgebra;
+using TmLab.Planning;
 using TmLab.Reconstruction;
 using TmLab.Shaping;
+using TmLab.Simulation;
 using TmLab.Storage.AtomicFiles;
+using TmLab.Storage.Bench;
 using TmLab.Storage.Ingest;
 using TmLab.Storage.Manifest;
 using TmLab.Storage.Masks;
+using TmLab.Storage.Plans;
 using TmLab.Storage.StageFiles;
 
 namespace TmLab.Cli.Stages;
@@ -20,11 +24,37 @@ namespace TmLab.Cli.Stages;
 /// <summary>The stages on real files.</summary>
 internal sealed class StoredStages : IStages
 {
+    public PlanOutcome Plan(PlanRequest request, StageContext context)
+    {
+        RefuseTakenFolder(request.Output, context);
+        PlanSettings settings = request.Repair is { } matrix
+            ? RepairSource.Load(matrix, request.Measurement, request.Settings)
+            : PlanInputs.Load(request.Settings, request.Patterns, request.Lut, request.Flatness);
+        var plan = MeasurementPlan.Make(settings);
+        int images = PlanFolder.Write(request.Output, context.Settings.Force, plan, Threads(context), context.Progress, context.Cancellation);
+        return new PlanOutcome(plan, images);
+    }
+
+    public SimulateOutcome Simulate(SimulateRequest request, StageContext context)
+    {
+        RefuseTakenFolder(request.Output, context);
+        OpenedPlan plan = MeasurementFolder.OpenPlan(request.Input);
+        BenchSettings settings = BenchFor(request, plan);
+        using var bench = VirtualBench.Create(
+            settings, plan.Manifest, plan.Schedule, plan.CustomPatterns, Threads(context), context.Cancellation);
+        MeasurementManifest written = SimulatedFolder.Write(
+            request.Output, context.Settings.Force, plan, bench, request.Frames, Threads(context), context.Progress, context.Cancellation);
+        double range = bench.Truth.DriftPhaseRad.Max() - bench.Truth.DriftPhaseRad.Min();
+        return new SimulateOutcome(written, bench.FrameSize, bench.FrameCount, request.Bench.MediumInWords, settings, range);
+    }
+
     public MeasurementFacts Ingest(IngestRequest request, StageContext context)
     {
         RefuseTaken(request.Output, context);
-        using OpenedMeasurement measurement = MeasurementFolder.Open(request.Folder);
-        StageProvenance provenance = Provenance.Of(context, [measurement.ManifestPath], new { request.Folder });
+        using OpenedMeasurement measurement = request.Second is { } second
+            ? MergedMeasurement.Open(request.Folder, second)
+            : MeasurementFolder.Open(request.Folder);
+        StageProvenance provenance = Provenance.Of(context, [measurement.ManifestPath], new { request.Folder, request.Second });
         using var writer = new MeasurementFileWriter(
             request.Output, context.Settings.Force, provenance, measurement.Frames.FrameCount, measurement.Frames.FrameSize);
         return Ingestion.Run(measurement, writer, context.Progress, context.Cancellation);
@@ -94,6 +124,30 @@ internal sealed class StoredStages : IStages
                 choice.ToString().ToLowerInvariant(), found.Succeeded, found.Engine?.Description ?? found.Explanation ?? "");
         }),
     ]);
+
+    /// <summary>A plan that leaves the frame size to the frames cannot be simulated, and faults must name its frames.</summary>
+    private static BenchSettings BenchFor(SimulateRequest request, OpenedPlan plan)
+    {
+        string manifest = Path.GetFileName(plan.ManifestPath);
+        if (plan.Manifest.Camera.Size is null)
+        {
+            throw new BadInputException(manifest, "camera", "width and height are not given, so there is nothing to simulate", "add camera.width and camera.height");
+        }
+
+        int frames = plan.Schedule.Frames.Length;
+        BenchSettings bench = request.Bench.For(plan.Manifest, PlanExpectationsJson.Read(Path.GetDirectoryName(plan.ManifestPath)!));
+        ImmutableArray<InputProblem> wrong =
+        [
+            .. bench.Faults.Where(f => f.Frame >= frames)
+                .Select(f => new InputProblem("--fault", null, $"frame {f.Frame} is none of the {frames} frames", $"name one from 0 to {frames - 1}")),
+        ];
+        return wrong.IsEmpty ? bench : throw new BadInputException(wrong);
+    }
+
+    private static void RefuseTakenFolder(string output, StageContext context) =>
+        AtomicFolder.RefuseTaken(Path.TrimEndingDirectorySeparator(output), context.Settings.Force, ManifestJson.FileName);
+
+    private static int Threads(StageContext context) => context.Settings.Threads ?? Environment.ProcessorCount;
 
     /// <summary>Before any long work: reading and digesting the input may take minutes.</summary>
     private static void RefuseTaken(string output, StageContext context) => AtomicOutput.RefuseTaken(output, context.Settings.Force);

@@ -20,12 +20,36 @@ public static class MeasurementFolder
     /// <exception cref="BadInputException">Anything is wrong; it carries every problem found.</exception>
     public static OpenedMeasurement Open(string folderOrManifestPath, bool allowOutside = false)
     {
+        (string path, MeasurementOpening opening) = Begin(folderOrManifestPath, allowOutside, needsAllModes: true);
+        return opening.Open(path);
+    }
+
+    /// <summary>Opens a part of a measurement: like <see cref="Open"/>, but patterns may be missing from the schedule.</summary>
+    /// <param name="folderOrManifestPath">A folder that holds <c>measurement.json</c>, or a manifest file of any name.</param>
+    /// <exception cref="BadInputException">Anything is wrong; it carries every problem found.</exception>
+    public static OpenedMeasurement OpenPart(string folderOrManifestPath)
+    {
+        (string path, MeasurementOpening opening) = Begin(folderOrManifestPath, allowOutside: false, needsAllModes: false);
+        return opening.Open(path);
+    }
+
+    /// <summary>Opens what a measurement is to be: everything but its frames, which need not be there. Patterns may be missing.</summary>
+    /// <param name="folderOrManifestPath">A folder that holds <c>measurement.json</c>, or a manifest file of any name.</param>
+    /// <exception cref="BadInputException">Anything is wrong; it carries every problem found.</exception>
+    public static OpenedPlan OpenPlan(string folderOrManifestPath)
+    {
+        (string path, MeasurementOpening opening) = Begin(folderOrManifestPath, allowOutside: false, needsAllModes: false);
+        return opening.OpenPlan(path);
+    }
+
+    private static (string Path, MeasurementOpening Opening) Begin(string folderOrManifestPath, bool allowOutside, bool needsAllModes)
+    {
         string path = ManifestPathOf(folderOrManifestPath);
         string name = Path.GetFileName(path);
         MeasurementManifest manifest = ManifestJson.Parse(InputFile.ReadAll(path, name, ManifestJson.LargestBytes), name);
         var problems = new ProblemList(name);
-        var opening = new MeasurementOpening(manifest, new ManifestPaths(Path.GetDirectoryName(path)!, allowOutside, problems), problems);
-        return opening.Open(path);
+        var paths = new ManifestPaths(Path.GetDirectoryName(path)!, allowOutside, problems);
+        return (path, new MeasurementOpening(manifest, paths, problems, needsAllModes));
     }
 
     private static string ManifestPathOf(string folderOrManifestPath)
@@ -49,8 +73,19 @@ public static class MeasurementFolder
 }
 
 /// <summary>The steps of opening one measurement; each adds its problems and lets the others go on.</summary>
-internal sealed class MeasurementOpening(MeasurementManifest manifest, ManifestPaths paths, ProblemList problems)
+internal sealed class MeasurementOpening(
+    MeasurementManifest manifest, ManifestPaths paths, ProblemList problems, bool needsAllModes)
 {
+    public OpenedPlan OpenPlan(string manifestPath)
+    {
+        (ImmutableArray<ScheduledFrame> Rows, bool HasTimes)? rows = Guarded(ReadScheduleRows);
+        ImmutableArray<Complex> patterns = Guarded(ReadPatterns) ?? [];
+        GrayPhaseTable? lut = Guarded(ReadLut);
+        ImmutableArray<byte> flatness = Guarded(ReadFlatness) ?? [];
+        problems.ThrowIfAny();
+        return new OpenedPlan(manifestPath, manifest, MakeSchedule(rows), patterns, lut, flatness);
+    }
+
     public OpenedMeasurement Open(string manifestPath)
     {
         IFrameSource? frames = null;
@@ -98,7 +133,7 @@ internal sealed class MeasurementOpening(MeasurementManifest manifest, ManifestP
         (ImmutableArray<ScheduledFrame> Rows, bool HasTimes)? read = ScheduleCsv.Read(path, found);
         if (read is { } whole)
         {
-            found.Add(ScheduleChecks.Check(whole.Rows, manifest.Modes, name));
+            found.Add(ScheduleChecks.Check(whole.Rows, manifest.Modes, name, needsAllModes));
         }
 
         problems.Add(found.ToImmutable());

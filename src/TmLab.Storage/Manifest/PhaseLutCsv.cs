@@ -1,3 +1,5 @@
+using System.Globalization;
+using System.Text;
 using TmLab.Measurement;
 
 namespace TmLab.Storage.Manifest;
@@ -26,5 +28,17 @@ internal static class PhaseLutCsv
 
         problems.Add(found.ToImmutable());
         return found.IsEmpty ? lut : null;
+    }
+
+    /// <summary>Writes a table so that reading it gives the same numbers. Lines end in \n.</summary>
+    public static string Write(GrayPhaseTable table)
+    {
+        var text = new StringBuilder(string.Join(',', Columns)).Append('\n');
+        for (int i = 0; i < table.Gray.Length; i++)
+        {
+            text.Append(CultureInfo.InvariantCulture, $"{table.Gray[i]},{table.PhaseRad[i]:R}\n");
+        }
+
+        return text.ToString();
     }
 }

@@ -13,6 +13,7 @@ namespace TmLab.Storage.StageFiles;
 public sealed class MatrixFileReader : IRowBlockReader, IDisposable
 {
     internal const string Matrix = "/matrix";
+    internal const string PatternValid = "/modes/pattern_valid";
 
     private readonly StageFileReader _file;
     private readonly StoredRows _rows;
@@ -82,7 +83,10 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
             Flags("/pixels/valid", RowCount),
             [.. _file.ReadArray<float>("/pixels/visibility", RowCount)],
             [.. _file.ReadArray<float>("/pixels/noise_rms", RowCount)]),
-        new ModeFacts(Flags("/modes/valid", ColumnCount), [.. _file.ReadArray<float>("/modes/noise_rms", ColumnCount)]),
+        new ModeFacts(Flags("/modes/valid", ColumnCount), [.. _file.ReadArray<float>("/modes/noise_rms", ColumnCount)])
+        {
+            PatternValid = _file.Has(PatternValid) ? Flags(PatternValid, -1) : [],
+        },
         ReadDrift(),
         ReadQuality());
 

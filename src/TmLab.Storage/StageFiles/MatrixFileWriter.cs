@@ -76,6 +76,10 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         Preconditions.SameLength(modes.NoiseRms.Length, _columnCount);
         _file.Add("/modes/valid", Flags(modes.Valid), "1");
         _file.Add("/modes/noise_rms", modes.NoiseRms.ToArray(), "sqrt(count)");
+        if (!modes.PatternValid.IsEmpty)
+        {
+            _file.Add(MatrixFileReader.PatternValid, Flags(modes.PatternValid), "1");
+        }
     }
 
     private void WriteDrift(DriftFacts drift)

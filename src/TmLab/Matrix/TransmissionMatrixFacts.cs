@@ -48,7 +48,14 @@ public sealed record PixelFacts(
 /// <summary>Facts on the columns, arrays of one entry a macro-pixel.</summary>
 /// <param name="Valid">Whether the column may be used.</param>
 /// <param name="NoiseRms">R.m.s. noise of one element of the column, in the matrix' unit; NaN where it cannot be known.</param>
-public sealed record ModeFacts(ImmutableArray<bool> Valid, ImmutableArray<float> NoiseRms);
+public sealed record ModeFacts(ImmutableArray<bool> Valid, ImmutableArray<float> NoiseRms)
+{
+    /// <summary>
+    /// Whether each pattern k (not macro-pixel) was measured soundly; those that were not are what a repair measures again. Empty
+    /// where all were. In bases other than single macro-pixels a lost pattern is missing from every column.
+    /// </summary>
+    public ImmutableArray<bool> PatternValid { get; init; } = [];
+}
 
 /// <summary>How the drift was followed.</summary>
 public enum DriftMethod

@@ -10,12 +10,14 @@ public static class ScheduleChecks
     /// <param name="rows">The rows in the order of the file.</param>
     /// <param name="modes">The patterns that the rows may name.</param>
     /// <param name="file">The file's name for messages.</param>
-    public static ImmutableArray<InputProblem> Check(ImmutableArray<ScheduledFrame> rows, ModeDescription modes, string file)
+    /// <param name="needsAllModes">Whether every pattern must have been shown; a part of a measurement shows some of them.</param>
+    public static ImmutableArray<InputProblem> Check(
+        ImmutableArray<ScheduledFrame> rows, ModeDescription modes, string file, bool needsAllModes = true)
     {
         var problems = new ProblemList(file);
         problems.Add(FrameNumbers(rows, file));
         problems.Add(Times(rows, file));
-        problems.Add(ModeNumbers(rows, modes, file));
+        problems.Add(ModeNumbers(rows, modes, file, needsAllModes));
         problems.Add(StepChecks.Check(rows, file));
         return problems.ToImmutable();
     }
@@ -55,8 +57,9 @@ public static class ScheduleChecks
         return problems.ToImmutable();
     }
 
-    /// <summary>Whether every pattern index lies in 0 … K−1 and every one of them was shown as a mode.</summary>
-    public static ImmutableArray<InputProblem> ModeNumbers(ImmutableArray<ScheduledFrame> rows, ModeDescription modes, string file)
+    /// <summary>Whether every pattern index lies in 0 … K−1 and, where all are needed, every one of them was shown as a mode.</summary>
+    public static ImmutableArray<InputProblem> ModeNumbers(
+        ImmutableArray<ScheduledFrame> rows, ModeDescription modes, string file, bool needsAllModes = true)
     {
         var problems = new ProblemList(file);
         problems.AddOfOneKind(rows
@@ -64,7 +67,11 @@ public static class ScheduleChecks
             .Where(r => r.Row.IsStepped && (r.Row.Mode < 0 || r.Row.Mode >= modes.PatternCount))
             .Select(r => (
                 r.Place, $"mode {r.Row.Mode} lies outside 0 … {modes.PatternCount - 1}", "correct the mode or modes.count in the manifest")));
-        AddMissingModes(rows, modes.PatternCount, problems);
+        if (needsAllModes)
+        {
+            AddMissingModes(rows, modes.PatternCount, problems);
+        }
+
         return problems.ToImmutable();
     }
 

@@ -1,4 +1,5 @@
 using TmLab.Measurement;
+using TmLab.Planning;
 using TmLab.Quantities;
 
 namespace TmLab.Simulation;

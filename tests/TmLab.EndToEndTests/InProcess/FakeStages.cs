@@ -14,6 +14,10 @@ internal sealed class FakeStages(Func<Exception>? failure = null) : IStages
 
     public MaskRequest? LastMask { get; private set; }
 
+    public PlanOutcome Plan(PlanRequest request, StageContext context) => throw new NotSupportedException();
+
+    public SimulateOutcome Simulate(SimulateRequest request, StageContext context) => throw new NotSupportedException();
+
     public MeasurementFacts Ingest(IngestRequest request, StageContext context) => throw new NotSupportedException();
 
     public TransmissionMatrixFacts Reconstruct(ReconstructRequest request, StageContext context) =>

@@ -1,6 +1,7 @@
 using System.Collections.Immutable;
 using System.Numerics;
 using TmLab.Measurement;
+using TmLab.Planning;
 using TmLab.Quantities;
 using TmLab.Simulation;
 using Xunit;

@@ -2,13 +2,16 @@ using System.Collections.Immutable;
 using TmLab.Measurement;
 using TmLab.Numerics;
 
-namespace TmLab.Simulation;
+namespace TmLab.Planning;
 
 /// <summary>What a schedule consists of. Immutable.</summary>
 public sealed record ScheduleSettings
 {
-    /// <summary>Number of patterns, shown in order.</summary>
+    /// <summary>Number of patterns of the basis.</summary>
     public required int PatternCount { get; init; }
+
+    /// <summary>The patterns to show as modes, in this order, each once; empty for all of them from 0 on.</summary>
+    public ImmutableArray<int> Patterns { get; init; } = [];
 
     /// <summary>Number of equal phase steps 2πs/S, at least 1.</summary>
     public int Steps { get; init; } = 4;
@@ -44,14 +47,15 @@ public static class ScheduleBuilder
         AddPlain(frames, FrameRole.Dark, settings.DarkFrames, settings);
         AddPlain(frames, FrameRole.Reference, settings.ReferenceFrames, settings);
         AddPlain(frames, FrameRole.Blank, settings.BlankFrames, settings);
-        for (int mode = 0; mode < settings.PatternCount; mode++)
+        int[] patterns = settings.Patterns.IsDefaultOrEmpty ? [.. Enumerable.Range(0, settings.PatternCount)] : [.. settings.Patterns];
+        for (int shown = 0; shown < patterns.Length; shown++)
         {
-            if (settings.TrackerEveryModes > 0 && mode % settings.TrackerEveryModes == 0)
+            if (settings.TrackerEveryModes > 0 && shown % settings.TrackerEveryModes == 0)
             {
                 AddSteps(frames, FrameRole.Tracker, settings.TrackerPattern, settings);
             }
 
-            AddSteps(frames, FrameRole.Mode, mode, settings);
+            AddSteps(frames, FrameRole.Mode, patterns[shown], settings);
         }
 
         if (settings.TrackerEveryModes > 0)
@@ -65,6 +69,13 @@ public static class ScheduleBuilder
     private static void Check(ScheduleSettings settings)
     {
         Preconditions.InRange(settings.PatternCount, 1, 1 << 24);
+        Preconditions.Require(
+            settings.Patterns.IsDefaultOrEmpty || settings.Patterns.Distinct().Count() == settings.Patterns.Length, "A pattern is named twice.");
+        foreach (int pattern in settings.Patterns.IsDefault ? [] : settings.Patterns)
+        {
+            Preconditions.InRange(pattern, 0, settings.PatternCount - 1);
+        }
+
         Preconditions.InRange(settings.Steps, 1, 1000);
         Preconditions.InRange(settings.TrackerPattern, 0, settings.PatternCount - 1);
         Preconditions.InRange(settings.TrackerEveryModes, 0, int.MaxValue);

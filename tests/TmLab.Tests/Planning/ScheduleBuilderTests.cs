@@ -1,9 +1,9 @@
 using CsCheck;
 using TmLab.Measurement;
-using TmLab.Simulation;
+using TmLab.Planning;
 using Xunit;
 
-namespace TmLab.Tests.Simulation;
+namespace TmLab.Tests.Planning;
 
 public sealed class ScheduleBuilderTests
 {

@@ -1,6 +1,7 @@
 using System.Collections.Immutable;
 using TmLab.Measurement;
 using TmLab.Numerics.LinearAlgebra;
+using TmLab.Numerics.Statistics;
 
 namespace TmLab.Reconstruction.Drift;
 
@@ -14,6 +15,7 @@ internal sealed class DriftPathSolver
 {
     // Systematic step errors are expected to be of this order, radians: a weak prior.
     private const double StepErrorSpreadRad = 0.5;
+    private const ulong DrawSeed = 20;
 
     private readonly Schedule _schedule;
     private readonly GroupPhases _phases;
@@ -22,6 +24,8 @@ internal sealed class DriftPathSolver
     private readonly int[] _frames;
     private readonly int[] _place;
     private readonly int _steps;
+    private BandedCholesky? _factor;
+    private Border? _border;
 
     public DriftPathSolver(Schedule schedule, GroupPhases phases, ImmutableArray<double> commandedRad, ImmutableArray<TrackerPin> pins)
     {
@@ -56,8 +60,30 @@ internal sealed class DriftPathSolver
         // The absolute phase means nothing: the first frame is held near zero where no tracker does.
         normal.Add(0, 0, _pins.IsEmpty ? 1e6 : 1e-6);
         BandedCholesky factor = normal.Factor();
+        (_factor, _border) = (factor, border);
         (double[] path, double[] errors) = border.Solve(factor, right, StepErrorSpreadRad);
         return new DriftPath(OverAllFrames(path), OverAllFrames([.. factor.InverseDiagonal().Select(Math.Sqrt)]), [.. errors], walkRate);
+    }
+
+    /// <summary>
+    /// Draws from the posterior distribution about the path just solved for: the error of every frame's phase, path and step error
+    /// together, and the error of each step alone, radians. Deterministic.
+    /// </summary>
+    public IEnumerable<(double[] FrameErrorRad, double[] StepErrorRad)> DrawErrors(int count)
+    {
+        for (int draw = 0; draw < count; draw++)
+        {
+            var random = new SeededRandom(DrawSeed, (ulong)draw);
+            double[] white = [.. Enumerable.Range(0, _frames.Length).Select(_ => random.NextNormal())];
+            (double[] path, double[] steps) = _border!.Draw(_factor!.Colour(white), random);
+            var errors = new double[_schedule.Frames.Length];
+            foreach (ScheduledFrame frame in _schedule.Frames.Where(f => f.IsStepped))
+            {
+                errors[frame.Index] = path[_place[frame.Index]] + steps[frame.Step];
+            }
+
+            yield return (errors, steps);
+        }
     }
 
     /// <summary>
@@ -208,6 +234,8 @@ internal sealed class DriftPathSolver
         private readonly double[][] _columns = [.. Enumerable.Range(0, steps).Select(_ => new double[frames])];
         private readonly double[,] _corner = new double[steps, steps];
         private readonly double[] _right = new double[steps];
+        private double[][] _solved = [];
+        private double[,] _information = new double[0, 0];
 
         public void Add(int row, int stepOfRow, int stepOfColumn, double value, double observed)
         {
@@ -233,16 +261,30 @@ internal sealed class DriftPathSolver
                 }
             }
 
+            (_solved, _information) = (solved, corner);
             double[] errors = [0, .. SmallSymmetric.Solve(corner, rest)];
+            Subtract(errors, free);
+            return (free, errors);
+        }
+
+        /// <summary>Adds the step errors' uncertainty to a draw of the path for known step errors.</summary>
+        public (double[] Path, double[] StepErrors) Draw(double[] path, SeededRandom random)
+        {
+            double[] white = [.. Enumerable.Range(1, steps - 1).Select(_ => random.NextNormal())];
+            double[] errors = [0, .. SmallSymmetric.Colour(_information, white)];
+            Subtract(errors, path);
+            return (path, errors);
+        }
+
+        private void Subtract(double[] errors, double[] path)
+        {
             for (int s = 1; s < steps; s++)
             {
-                for (int i = 0; i < free.Length; i++)
+                for (int i = 0; i < path.Length; i++)
                 {
-                    free[i] -= errors[s] * solved[s][i];
+                    path[i] -= errors[s] * _solved[s][i];
                 }
             }
-
-            return (free, errors);
         }
 
         private static double Dot(double[] a, double[] b)

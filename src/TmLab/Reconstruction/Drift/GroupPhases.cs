@@ -24,6 +24,15 @@ internal sealed class GroupPhases
     /// <summary>The groups, modes and trackers, in the order of recording.</summary>
     public ImmutableArray<StepGroup> Groups { get; }
 
+    /// <summary>Each sample pixel's variance of a count about the model, counts²; infinite for pixels that did not serve.</summary>
+    public double[] PixelVariance { get; private set; } = [];
+
+    /// <summary>
+    /// Each group's squared residual over what the pixels' variance lets expect: 1 for a group like the others, NaN for one that
+    /// could not be fitted.
+    /// </summary>
+    public double[] Misfit { get; private set; } = [];
+
     /// <summary>One fit a group.</summary>
     public GroupFit[] Fits { get; }
 
@@ -61,6 +70,32 @@ internal sealed class GroupPhases
         return (overlap, energyA, energyB, pixels);
     }
 
+    /// <summary>
+    /// |⟨D_a, D_b⟩|²/(⟨D_a,D_a⟩⟨D_b,D_b⟩) over the sample as measured, and with the noise' share taken off the energies.
+    /// </summary>
+    public (double Measured, double WithoutNoise) Similarity(int a, int b)
+    {
+        Complex overlap = 0;
+        double energyA = 0, energyB = 0, noiseA = 0, noiseB = 0;
+        (double gainA, double gainB) = (NoiseGain(a), NoiseGain(b));
+        for (int p = 0; p < _sample.Count; p++)
+        {
+            Complex x = Fits[a].Field[p], y = Fits[b].Field[p];
+            if (Complex.IsFinite(x) && Complex.IsFinite(y) && double.IsFinite(PixelVariance[p]))
+            {
+                overlap += x * Complex.Conjugate(y);
+                (energyA, energyB) = (energyA + Square(x), energyB + Square(y));
+                (noiseA, noiseB) = (noiseA + (gainA * PixelVariance[p]), noiseB + (gainB * PixelVariance[p]));
+            }
+        }
+
+        double squared = Square(overlap);
+        double left = Math.Max(energyA - noiseA, 0) * Math.Max(energyB - noiseB, 0);
+        return (squared / (energyA * energyB), a == b ? 1 : squared / left);
+    }
+
+    private double NoiseGain(int group) => StepFit.TryCreate(Fits[group].PhaseRad)?.FieldVariance ?? double.NaN;
+
     private bool Run(CancellationToken cancel)
     {
         if (Fits.Length < CoherenceModel.FewestGroups)
@@ -80,6 +115,8 @@ internal sealed class GroupPhases
 
             (variance, largestStep) = ImproveAll(model, cancel);
         }
+
+        PixelVariance = variance!;
 
         return true;
     }
@@ -129,7 +166,24 @@ internal sealed class GroupPhases
             variance[p] = freedom > 0 ? Math.Max(sum / freedom, 1.0 / 12) : double.PositiveInfinity;
         }
 
+        Misfit = [.. residuals.Select((r, k) => MisfitOf(r, variance, Fits[k].PhaseRad.Length))];
         return (variance, steps.Max());
+    }
+
+    private static double MisfitOf(double[] residual, double[] variance, int steps)
+    {
+        double sum = 0;
+        int freedom = (-2 * steps) + 1;
+        for (int p = 0; p < residual.Length; p++)
+        {
+            if (residual[p] > 0 && double.IsFinite(variance[p]))
+            {
+                sum += residual[p] / variance[p];
+                freedom += steps - 2;
+            }
+        }
+
+        return freedom > 0 ? sum / freedom : double.NaN;
     }
 
     private void ForEachGroup(Action<int> action, CancellationToken cancel) => Parallel.For(0, Fits.Length, Options(cancel), action);

@@ -8,7 +8,8 @@ namespace TmLab.Reconstruction;
 /// <param name="Visibility">Mean modulation depth 2|D|/(a − dark).</param>
 /// <param name="CountVariance">Variance of a frame's counts about the fit, counts²; NaN where it cannot be known.</param>
 /// <param name="SaturatedShare">Share of the surveyed frames at full scale.</param>
-internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, float[] SaturatedShare)
+/// <param name="Light">Mean counts above the dark level.</param>
+internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, float[] SaturatedShare, float[] Light)
 {
     private const int ChunkPixels = 8192;
 
@@ -23,7 +24,7 @@ internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, fl
         StepGroup[] groups = Spread([.. facts.Schedule.Modes], settings.SurveyModes);
         StepFit[] fits = [.. groups.Select(g => FramePhases.Fit(g, totalPhaseRad))];
         int pixels = facts.PixelCount;
-        var survey = new PixelSurvey(new float[pixels], new float[pixels], new float[pixels]);
+        var survey = new PixelSurvey(new float[pixels], new float[pixels], new float[pixels], new float[pixels]);
         var options = new ParallelOptions { MaxDegreeOfParallelism = settings.Threads, CancellationToken = cancel };
         Parallel.For(0, (pixels + ChunkPixels - 1) / ChunkPixels, options, chunk =>
         {
@@ -79,6 +80,7 @@ internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, fl
             for (int p = 0; p < pixels; p++)
             {
                 survey.Visibility[first + p] = (float)(_visibility[p] / _groups);
+                survey.Light[first + p] = (float)(_background[p] / _groups);
                 survey.SaturatedShare[first + p] = (float)_saturated[p] / _frames;
                 survey.CountVariance[first + p] = (float)(_freedom > 0 ? _residual[p] / _freedom : ModelVariance(_background[p] / _groups));
             }

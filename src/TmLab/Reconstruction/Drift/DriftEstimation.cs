@@ -17,18 +17,25 @@ public static class DriftEstimation
     /// <param name="cancel">Stops the work.</param>
     public static DriftFacts Run(
         IFrameBlockReader reader, MeasurementFacts facts, ReconstructionSettings settings, CancellationToken cancel) =>
+        Estimate(reader, facts, PixelSample.Read(reader, facts, settings), settings, cancel).Facts;
+
+    /// <summary>The same, with what is needed to say how well the drift is known.</summary>
+    internal static DriftEstimate Estimate(
+        IFrameBlockReader reader, MeasurementFacts facts, PixelSample sample, ReconstructionSettings settings, CancellationToken cancel) =>
         settings.Drift switch
         {
-            DriftMethod.None => DriftFacts.None(reader.FrameCount),
-            DriftMethod.TrackersInterpolated => TrackerDrift.Follow(reader, facts.Schedule, facts.Manifest.SteppedArm),
-            _ => Smoothed(reader, facts, settings, cancel) ?? TrackerDrift.Follow(reader, facts.Schedule, facts.Manifest.SteppedArm),
+            DriftMethod.None => new DriftEstimate(DriftFacts.None(reader.FrameCount), null, null),
+            DriftMethod.TrackersInterpolated => Interpolated(reader, facts),
+            _ => Smoothed(facts, sample, settings, cancel) ?? Interpolated(reader, facts),
         };
 
-    private static DriftFacts? Smoothed(
-        IFrameBlockReader reader, MeasurementFacts facts, ReconstructionSettings settings, CancellationToken cancel)
+    private static DriftEstimate Interpolated(IFrameBlockReader reader, MeasurementFacts facts) =>
+        new(TrackerDrift.Follow(reader, facts.Schedule, facts.Manifest.SteppedArm), null, null);
+
+    private static DriftEstimate? Smoothed(
+        MeasurementFacts facts, PixelSample sample, ReconstructionSettings settings, CancellationToken cancel)
     {
         ImmutableArray<double> commanded = FramePhases.Commanded(facts.Schedule, facts.Manifest.SteppedArm);
-        PixelSample sample = PixelSample.Read(reader, facts, settings);
         if (GroupPhases.Find(facts.Schedule, commanded, sample, settings, cancel) is not GroupPhases phases)
         {
             return null;
@@ -37,7 +44,7 @@ public static class DriftEstimation
         ImmutableArray<TrackerPin> pins = TrackerPins.Find(facts.Schedule, phases, commanded);
         var solver = new DriftPathSolver(facts.Schedule, phases, commanded, pins);
         DriftPath path = solver.Solve(solver.EstimateWalkRate());
-        return new DriftFacts(
+        var drift = new DriftFacts(
             DriftMethod.SmoothedPath,
             [.. pins.Select(p => p.TimeS)],
             [.. pins.Select(p => p.OffsetRad)],
@@ -45,7 +52,12 @@ public static class DriftEstimation
             path.PhaseRad,
             path.StandardDeviationRad,
             path.StepErrorRad,
-            PowerDrift.Gains(reader.FrameCount, phases),
-            path.WalkRateRad2PerS);
+            PowerDrift.Gains(facts.Schedule.Frames.Length, phases),
+            path.WalkRateRad2PerS)
+        {
+            Decorrelation = Decorrelation.Fit(phases, pins),
+            AmbiguousGaps = AmbiguousGaps.Find(facts.Schedule, phases, commanded, pins, solver.WalkRateInsideGroups()),
+        };
+        return new DriftEstimate(drift, phases, solver);
     }
 }

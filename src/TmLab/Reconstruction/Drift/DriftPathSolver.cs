@@ -90,7 +90,10 @@ internal sealed class DriftPathSolver
     /// The walk's variance rate, rad²/s, from the increments from step to step inside the groups, what they have in common taken off,
     /// and from the trackers: the larger.
     /// </summary>
-    public double EstimateWalkRate()
+    public double EstimateWalkRate() => Math.Max(Math.Max(WalkRateInsideGroups(), TrackerRate()), 1e-12);
+
+    /// <summary>The variance rate, rad²/s, that the groups alone show; not below zero.</summary>
+    public double WalkRateInsideGroups()
     {
         double[] meanIncrement = MeanIncrements(out int[] counts);
         double moved = 0, time = 0;
@@ -103,8 +106,7 @@ internal sealed class DriftPathSolver
             time += _schedule.Frames[to].TimeS - _schedule.Frames[from].TimeS;
         }
 
-        double inside = time > 0 ? moved / time : 0;
-        return Math.Max(Math.Max(inside, TrackerRate()), 1e-12);
+        return time > 0 ? Math.Max(0, moved / time) : 0;
     }
 
     private void AddWalk(SparseNormalEquations normal, double walkRate)

@@ -13,6 +13,7 @@ internal sealed class GroupPhases
 
     private readonly PixelSample _sample;
     private readonly ReconstructionSettings _settings;
+    private double[] _residual = [];
 
     private GroupPhases(ImmutableArray<StepGroup> groups, ImmutableArray<double> commandedRad, PixelSample sample, ReconstructionSettings settings)
     {
@@ -94,6 +95,18 @@ internal sealed class GroupPhases
         return (squared / (energyA * energyB), a == b ? 1 : squared / left);
     }
 
+    /// <summary>A group's squared residual in units of its fringes' energy.</summary>
+    public double ResidualShare(int group)
+    {
+        double fringes = 0;
+        foreach (Complex d in Fits[group].Field)
+        {
+            fringes += Complex.IsFinite(d) ? 2 * Fits[group].PhaseRad.Length * Square(d) : 0;
+        }
+
+        return _residual[group] / fringes;
+    }
+
     private double NoiseGain(int group) => StepFit.TryCreate(Fits[group].PhaseRad)?.FieldVariance ?? double.NaN;
 
     private bool Run(CancellationToken cancel)
@@ -166,6 +179,7 @@ internal sealed class GroupPhases
             variance[p] = freedom > 0 ? Math.Max(sum / freedom, 1.0 / 12) : double.PositiveInfinity;
         }
 
+        _residual = [.. residuals.Select(r => r.Sum())];
         Misfit = [.. residuals.Select((r, k) => MisfitOf(r, variance, Fits[k].PhaseRad.Length))];
         return (variance, steps.Max());
     }

@@ -1,0 +1,80 @@
+using System.Collections.Immutable;
+using TmLab.Matrix;
+
+namespace TmLab.Reconstruction.Drift;
+
+/// <summary>
+/// The sample's change from the overlap of the trackers with the first of them. In a medium whose field correlation falls as e^{−t/τ}
+/// the overlap falls as e^{−2t/τ}; the rate 1/τ is fitted by least squares, and believed when it exceeds four standard deviations.
+/// </summary>
+internal static class Decorrelation
+{
+    private const double Significance = 4;
+
+    // How well the noise' share of the energies is known, relative.
+    private const double NoiseKnowledge = 0.1;
+    private const int NewtonSteps = 50;
+
+    /// <summary>Fits the law; unknown with fewer than two trackers.</summary>
+    /// <param name="phases">The fields of the groups.</param>
+    /// <param name="pins">The trackers.</param>
+    public static DecorrelationFacts Fit(GroupPhases phases, ImmutableArray<TrackerPin> pins)
+    {
+        if (pins.Length < 2)
+        {
+            return DecorrelationFacts.Unknown;
+        }
+
+        var overlap = new double[pins.Length];
+        var variance = new double[pins.Length];
+        for (int k = 0; k < pins.Length; k++)
+        {
+            (double measured, overlap[k]) = phases.Similarity(pins[k].Group, pins[0].Group);
+            variance[k] = Variance(measured, overlap[k], phases.PixelVariance.Count(double.IsFinite));
+        }
+
+        double[] elapsed = [.. pins.Select(p => p.TimeS - pins[0].TimeS)];
+        (double rate, double sd) = FitRate(elapsed, overlap, variance);
+        bool significant = rate > Significance * sd;
+        return new DecorrelationFacts(
+            [.. overlap], significant ? 1 / rate : double.NaN, significant ? sd / (rate * rate) : double.NaN, double.NaN);
+    }
+
+    /// <summary>The field's correlation with the start at a time since the start.</summary>
+    public static double Correlation(DecorrelationFacts facts, double elapsedS) =>
+        double.IsNaN(facts.TimeConstantS) ? 1 : Math.Exp(-elapsedS / facts.TimeConstantS);
+
+    // Of a squared correlation coefficient of n independent pixels: 2 ρ² (1 − ρ²)²/n (Bartlett), scaled up with the noise' share;
+    // the last term is that share's own uncertainty.
+    private static double Variance(double measured, double corrected, int pixels)
+    {
+        double scale = corrected / measured;
+        double sampling = 2 * measured * (1 - measured) * (1 - measured) / Math.Max(1, pixels * TrackerPins.IndependentShare);
+        double knowledge = NoiseKnowledge * (scale - 1);
+        return (scale * scale * sampling) + (knowledge * knowledge) + 1e-8;
+    }
+
+    /// <summary>Gauss–Newton for the rate r ≥ 0 in e^{−2 r t}; its standard deviation from the larger of the expected and the found scatter.</summary>
+    private static (double Rate, double Sd) FitRate(double[] elapsed, double[] overlap, double[] variance)
+    {
+        double rate = 0, information = 0;
+        for (int i = 0; i < NewtonSteps; i++)
+        {
+            double gradient = 0;
+            information = 0;
+            for (int k = 1; k < elapsed.Length; k++)
+            {
+                double model = Math.Exp(-2 * rate * elapsed[k]), slope = -2 * elapsed[k] * model;
+                gradient += slope * (overlap[k] - model) / variance[k];
+                information += slope * slope / variance[k];
+            }
+
+            rate = Math.Max(0, rate + (gradient / information));
+        }
+
+        double squares = Enumerable.Range(1, elapsed.Length - 1)
+            .Sum(k => Math.Pow(overlap[k] - Math.Exp(-2 * rate * elapsed[k]), 2) / variance[k]);
+        double excess = Math.Max(1, squares / Math.Max(1, elapsed.Length - 2));
+        return (rate, Math.Sqrt(excess / information));
+    }
+}

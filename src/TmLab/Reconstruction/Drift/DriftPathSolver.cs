@@ -17,6 +17,9 @@ internal sealed class DriftPathSolver
     private const double StepErrorSpreadRad = 0.5;
     private const ulong DrawSeed = 20;
 
+    // The rate from a few tracker gaps must exceed that from all groups by so many standard deviations to be believed.
+    private const double TrackerSignificance = 3;
+
     private readonly Schedule _schedule;
     private readonly GroupPhases _phases;
     private readonly ImmutableArray<double> _commandedRad;
@@ -88,26 +91,19 @@ internal sealed class DriftPathSolver
 
     /// <summary>
     /// The walk's variance rate, rad²/s, from the increments from step to step inside the groups, what they have in common taken off,
-    /// and from the trackers: the larger.
+    /// or that from the trackers where it is significantly larger, the drift then being no plain walk.
     /// </summary>
-    public double EstimateWalkRate() => Math.Max(Math.Max(WalkRateInsideGroups(), TrackerRate()), 1e-12);
+    public double EstimateWalkRate()
+    {
+        double inside = WalkRateInsideGroups(), trackers = TrackerRate();
+        // Quantile of χ²_n/n (Wilson & Hilferty, Proc. Natl. Acad. Sci. 17, 684 (1931)).
+        double spread = 2.0 / (9 * Math.Max(1, _pins.Length - 1));
+        double limit = inside * Math.Pow(1 - spread + (TrackerSignificance * Math.Sqrt(spread)), 3);
+        return Math.Max(trackers > limit ? trackers : inside, 1e-12);
+    }
 
     /// <summary>The variance rate, rad²/s, that the groups alone show; not below zero.</summary>
-    public double WalkRateInsideGroups()
-    {
-        double[] meanIncrement = MeanIncrements(out int[] counts);
-        double moved = 0, time = 0;
-        foreach ((int from, int to, double increment, double variance) in Increments())
-        {
-            int step = _schedule.Frames[to].Step;
-            double freedom = counts[step] > 1 ? (counts[step] - 1.0) / counts[step] : 1;
-            double rest = increment - (counts[step] > 1 ? meanIncrement[step] : 0);
-            moved += (rest * rest / freedom) - variance;
-            time += _schedule.Frames[to].TimeS - _schedule.Frames[from].TimeS;
-        }
-
-        return time > 0 ? Math.Max(0, moved / time) : 0;
-    }
+    public double WalkRateInsideGroups() => WalkRate.Estimate([.. Increments()]);
 
     private void AddWalk(SparseNormalEquations normal, double walkRate)
     {
@@ -158,39 +154,36 @@ internal sealed class DriftPathSolver
         return information;
     }
 
-    private double[] MeanIncrements(out int[] counts)
-    {
-        var sum = new double[_steps];
-        counts = new int[_steps];
-        foreach ((_, int to, double increment, _) in Increments())
-        {
-            sum[_schedule.Frames[to].Step] += increment;
-            counts[_schedule.Frames[to].Step]++;
-        }
-
-        int[] n = counts;
-        return [.. sum.Select((s, i) => s / Math.Max(1, n[i]))];
-    }
-
-    private IEnumerable<(int From, int To, double Increment, double Variance)> Increments()
+    private IEnumerable<GroupIncrements> Increments()
     {
         for (int k = 0; k < _phases.Groups.Length; k++)
         {
-            ImmutableArray<int> frames = _phases.Groups[k].Frames;
-            if (_phases.Fits[k].Information[0, 0] == 0)
+            if (_phases.Fits[k].Information[0, 0] > 0)
             {
-                continue;
-            }
-
-            double[,] covariance = Covariance(_phases.Fits[k].Information);
-            for (int s = 1; s < frames.Length; s++)
-            {
-                double increment = _phases.Fits[k].PhaseRad[s] - _phases.Fits[k].PhaseRad[s - 1]
-                    - (_commandedRad[frames[s]] - _commandedRad[frames[s - 1]]);
-                double variance = covariance[s, s] + covariance[s - 1, s - 1] - (2 * covariance[s, s - 1]);
-                yield return (frames[s - 1], frames[s], increment, variance);
+                yield return IncrementsOf(k);
             }
         }
+    }
+
+    private GroupIncrements IncrementsOf(int group)
+    {
+        ImmutableArray<int> frames = _phases.Groups[group].Frames;
+        double[] observed = [.. frames.Select((f, s) => _phases.Fits[group].PhaseRad[s] - _commandedRad[f])];
+        double[,] absolute = Covariance(_phases.Fits[group].Information);
+        int n = frames.Length - 1;
+        var covariance = new double[n, n];
+        for (int i = 0; i < n; i++)
+        {
+            for (int j = 0; j < n; j++)
+            {
+                covariance[i, j] = absolute[i + 1, j + 1] - absolute[i + 1, j] - absolute[i, j + 1] + absolute[i, j];
+            }
+        }
+
+        return new GroupIncrements(
+            [.. Enumerable.Range(1, n).Select(s => observed[s] - observed[s - 1])],
+            covariance,
+            [.. Enumerable.Range(1, n).Select(s => _schedule.Frames[frames[s]].TimeS - _schedule.Frames[frames[s - 1]].TimeS)]);
     }
 
     // The common constant is not determined; holding it leaves the variance of differences as it is.

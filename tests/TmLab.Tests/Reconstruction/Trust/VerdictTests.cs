@@ -3,7 +3,6 @@ using System.Globalization;
 using System.Text;
 using TmLab.Matrix;
 using TmLab.Measurement;
-using TmLab.Reconstruction;
 using TmLab.Simulation;
 using TmLab.TestKit;
 using Xunit;
@@ -32,11 +31,11 @@ public sealed class VerdictTests
         new(BasisKind.Hadamard, 4, 2, 0, 0, 0),
         new(BasisKind.Hadamard, 4, 1000, 0.3, 0, 0),
         new(BasisKind.Hadamard, 4, 1000, 1, 0, 0),
-        new(BasisKind.Hadamard, 4, 1000, 2, 0, 0),
+        new(BasisKind.Hadamard, 4, 1000, 1.5, 0, 0),
         new(BasisKind.Hadamard, 4, 100, 1, 0, 3),
         new(BasisKind.Hadamard, 4, 1000, 0.5, 30, 0),
         new(BasisKind.Hadamard, 4, 1000, 0.5, 10, 2),
-        new(BasisKind.Hadamard, 4, 300, 0.5, 5, 0),
+        new(BasisKind.Hadamard, 4, 300, 0.5, 8, 0),
         new(BasisKind.Hadamard, 3, 1000, 0.5, 0, 0),
         new(BasisKind.Hadamard, 3, 100, 0.5, 0, 0),
         new(BasisKind.Hadamard, 3, 20, 0, 20, 2),
@@ -70,7 +69,7 @@ public sealed class VerdictTests
         new(BasisKind.Pixel, 5, 1000, 0.5, 20, 0),
         new(BasisKind.Pixel, 8, 1000, 0.5, 0, 0),
         new(BasisKind.Pixel, 3, 2000, 0.3, 0, 2),
-        new(BasisKind.Pixel, 4, 100, 0, 0, 0),
+        new(BasisKind.Pixel, 6, 500, 0.3, 0, 0),
     ];
 
     [Fact]
@@ -99,8 +98,26 @@ public sealed class VerdictTests
             Reference = new ReferenceBeam(trial.Speckle ? ReferenceShape.Speckle : ReferenceShape.Plane),
             Camera = new SimulatedCamera { ElectronsPerCount = 0.5 },
         };
-        var plan = new ScheduleSettings { PatternCount = 64, Steps = trial.Steps, TrackerEveryModes = trial.TrackerEvery, ReferenceFrames = 8 };
-        return TrialBench.Run(settings, plan, 24, 8, trial.Basis);
+        var plan = new ScheduleSettings { PatternCount = 64, Steps = trial.Steps, TrackerEveryModes = trial.TrackerEvery, DarkFrames = 0 };
+        return TrialBench.Run(settings, StartingWithATracker(plan), TrialBench.Manifest(trial.Grain > 0 ? 32 : 24, 8, trial.Basis, settings.Camera));
+    }
+
+    /// <summary>
+    /// The first tracker stands at time zero: the bench's sample moves on a straight way from its start to another one, so that e^{−t/τ}
+    /// is the correlation with the start only. Dark and reference frames come last.
+    /// </summary>
+    private static Schedule StartingWithATracker(ScheduleSettings plan)
+    {
+        ImmutableArray<ScheduledFrame> frames =
+            [.. ScheduleBuilder.Build(plan).Frames.Select(f => f.Index < plan.Steps ? f with { TimeS = f.Index * 1e-6 } : f)];
+        int count = frames.Length;
+        return new Schedule(
+            [
+                .. frames,
+                .. Enumerable.Range(0, 12).Select(i => new ScheduledFrame(
+                    count + i, i < 4 ? FrameRole.Dark : FrameRole.Reference, -1, -1, double.NaN, (count + i) / plan.FrameRateHz)),
+            ],
+            timesAreMeasured: true);
     }
 
     private static string Table((Trial Trial, TrialBench Bench)[] all)
@@ -113,11 +130,13 @@ public sealed class VerdictTests
             ErrorBudget e = b.Facts.Quality.Budget;
             text.AppendLine(string.Create(
                 CultureInfo.InvariantCulture,
-                $"| {t.Basis} | {t.Steps} | {t.Electrons} | {t.Drift} | {(t.Decorrelation > 0 ? t.Decorrelation.ToString(CultureInfo.InvariantCulture) : "none")} | {t.Grain} | {t.TrackerEvery} | {e.Fidelity:F4} | {b.TrueFidelity:F4} | {e.Fidelity - b.TrueFidelity:+0.0000;-0.0000} | {e.Noise:F4} | {e.Drift:F4} | {e.Decorrelation:F4} | {e.Steps:F4} |"));
+                $"| {t.Basis} | {t.Steps} | {t.Electrons} | {t.Drift} | {(t.Decorrelation > 0 ? t.Decorrelation.ToString(CultureInfo.InvariantCulture) : "none")} | {t.Grain} | {t.TrackerEvery} | {e.Fidelity:F4} | {b.TrueFidelity:F4} | {Signed(e.Fidelity - b.TrueFidelity)} | {e.Noise:F4} | {e.Drift:F4} | {e.Decorrelation:F4} | {e.Steps:F4} |"));
         }
 
         return text.ToString();
     }
+
+    private static string Signed(double value) => (value < -0.00005 ? "−" : "+") + Math.Abs(value).ToString("F4", CultureInfo.InvariantCulture);
 
     private static void WriteDocument(string table)
     {

@@ -21,5 +21,7 @@ internal interface IStages
 
     ShowReport Describe(ShowRequest request, StageContext context);
 
+    CheckReport Check(CheckRequest request, StageContext context);
+
     AboutReport DescribeProgram();
 }

@@ -24,7 +24,7 @@ internal sealed class FrameSearch
     private const double TieMisfit = 0.02;
 
     // So many groups before the end a shift no longer pays for itself in the shift's path.
-    private const int TailGroups = 3;
+    private const int TailGroups = 6;
     private static readonly ImmutableArray<int> Offsets = [0, -1, 1, -2, 2];
 
     private readonly Schedule _schedule;
@@ -121,24 +121,20 @@ internal sealed class FrameSearch
         }
 
         _places = FramePlaces.Of(ofFrame.Length, f => ofFrame[f]);
-        for (int k = 1; k < offset.Length; k++)
+        for (int k = 0; k < offset.Length; k++)
         {
-            if (offset[k] != offset[k - 1])
+            int before = k == 0 ? 0 : offset[k - 1];
+            if (offset[k] != before)
             {
-                LocateShift(k, offset[k - 1], offset[k]);
+                LocateShift(k, before, offset[k]);
             }
-        }
-
-        if (offset[0] != 0)
-        {
-            AddFinding(offset[0] < 0 ? FrameFindingKind.Dropped : FrameFindingKind.Duplicated, [_groups[0].Frames[0]], _groups[0].Mode, true);
         }
     }
 
     /// <summary>In which frame of group k − 1 or k the offset changes.</summary>
     private void LocateShift(int k, int before, int after)
     {
-        int[] candidates = [.. _groups[k - 1].Frames, .. _groups[k].Frames];
+        int[] candidates = [.. FramesAround(k)];
         if (after > before)
         {
             int[] copied = [.. candidates.Where(f => _copies.Contains(f + before + 1))];
@@ -146,15 +142,17 @@ internal sealed class FrameSearch
         }
 
         (int Frame, FramePlaces Places, double Cost)[] all =
-            [.. candidates.Select(f => (f, Shifted(f, k, before, after))).Select(c => (c.f, c.Item2, Cost(c.Item2, k - 1, k)))];
+            [.. candidates.Select(f => (f, Shifted(f, k, before, after))).Select(c => (c.f, c.Item2, Cost(c.Item2, Math.Max(0, k - 1), k)))];
         Accept(all, before, after);
     }
+
+    private IEnumerable<int> FramesAround(int k) => k == 0 ? _groups[0].Frames : _groups[k - 1].Frames.Concat(_groups[k].Frames);
 
     // Groups k − 1 and k with frames before f at one offset and those behind it at the other; of two, f itself has the first place.
     private FramePlaces Shifted(int frame, int k, int before, int after)
     {
         bool lost = after < before;
-        var changes = _groups[k - 1].Frames.Concat(_groups[k].Frames).Select(f =>
+        var changes = FramesAround(k).Select(f =>
             (f, f < frame ? f + before : f > frame ? f + after : lost ? FramePlaces.Nowhere : f + before));
         return _places.With([.. changes]);
     }

@@ -2,7 +2,7 @@ namespace TmLab.Reconstruction.Frames;
 
 /// <summary>
 /// The likeliest course of the frames' offset over the groups: least total misfit, a change of the offset costing as much as several
-/// groups that do not fit (Viterbi, IEEE Trans. Inf. Theory 13, 260 (1967)).
+/// groups that do not fit, and so does beginning with another than the middle one, none (Viterbi, IEEE Trans. Inf. Theory 13, 260 (1967)).
 /// </summary>
 internal static class ShiftPath
 {
@@ -10,7 +10,7 @@ internal static class ShiftPath
     private const double ChangeCost = 1;
 
     /// <summary>One offset's number a group.</summary>
-    /// <param name="misfit">misfit[group][offset]; NaN counts as that of wrong frames.</param>
+    /// <param name="misfit">misfit[group][offset], offsets rising about zero; NaN counts as that of wrong frames.</param>
     public static int[] Find(double[][] misfit)
     {
         int offsets = misfit[0].Length;
@@ -20,7 +20,7 @@ internal static class ShiftPath
         {
             for (int o = 0; o < offsets; o++)
             {
-                (double cost, from[k, o]) = k == 0 ? (0, o) : Cheapest(best, k - 1, o, offsets);
+                (double cost, from[k, o]) = k == 0 ? (ChangeCost * Math.Abs(o - (offsets / 2)), o) : Cheapest(best, k - 1, o, offsets);
                 best[k, o] = cost + (double.IsNaN(misfit[k][o]) ? 1 : Math.Min(misfit[k][o], 1));
             }
         }

@@ -31,7 +31,21 @@ internal sealed class CommandRunner(ToolConsole console, CancellationToken cance
     private Report WithProgress(CommonSettings settings, Func<StageContext, Report> work)
     {
         using ProgressDisplay? progress = settings.Quiet ? null : new ProgressDisplay(console.Messages, TimeProvider.System);
-        return work(new StageContext(settings, progress, cancellation));
+        var context = new StageContext(settings, progress, cancellation)
+        {
+            Note = settings.Quiet ? _ => { } : console.Messages.Warning,
+            Explain = settings.Verbose ? console.Messages.Detail : _ => { },
+        };
+        Report report = work(context);
+        context.Explain($"peak memory {ByteSize.Format(PeakMemoryBytes())}");
+        return report;
+    }
+
+    // Of the whole process, the runtime's own included; from the system's own account.
+    private static long PeakMemoryBytes()
+    {
+        using var process = System.Diagnostics.Process.GetCurrentProcess();
+        return process.PeakWorkingSet64;
     }
 
     private void Print(Report report, CommonSettings settings)

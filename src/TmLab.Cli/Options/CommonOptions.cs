@@ -11,11 +11,11 @@ internal static class CommonOptions
     private static readonly Option<bool> Force = Flag("--force", "Overwrite outputs that exist.");
     private static readonly Option<bool> Json = Flag("--json", "Print the result as one JSON object.");
     private static readonly Option<bool> Quiet = Flag("--quiet", "Print no progress and no warnings.");
-    private static readonly Option<bool> Verbose = Flag("--verbose", "Print the trace of a failure.");
+    private static readonly Option<bool> Verbose = Flag("--verbose", "Say what was chosen and why, and print the trace of a failure.");
 
     private static readonly Option<long?> Memory = new("--memory")
     {
-        Description = "Working memory to stay within, such as 512MiB or 2GiB.",
+        Description = "Working memory to stay within, such as 512MiB or 2GiB (a quarter of the machine's when not given).",
         HelpName = "SIZE",
         Recursive = true,
         CustomParser = ParseMemory,

@@ -1,6 +1,7 @@
 using System.Collections.Immutable;
 using TmLab.Channels;
 using TmLab.Cli.Help;
+using TmLab.Cli.Options;
 using TmLab.Cli.Reports;
 using TmLab.Failures;
 using TmLab.Matrix;
@@ -36,12 +37,16 @@ internal sealed class StoredStages : IStages
         var defaults = new ReconstructionSettings();
         ReconstructionSettings settings = defaults with
         {
-            MemoryBytes = context.Settings.MemoryBytes ?? defaults.MemoryBytes,
-            Threads = context.Settings.Threads ?? defaults.Threads,
+            MemoryBytes = context.MemoryBytes,
+            Threads = context.Threads,
             Drift = request.Drift ?? defaults.Drift,
         };
         StageProvenance provenance = Provenance.Of(context, [request.Input], settings);
         MeasurementFacts facts = measurement.Facts;
+        var plan = TilePlan.For(measurement.FrameCount, facts.Manifest.Modes.ModeCount, facts.PixelCount, settings);
+        context.Explain(
+            $"memory {ByteSize.Format(settings.MemoryBytes)}: {plan.TileCount} tiles of {plan.TilePixels} pixels, "
+            + $"{ByteSize.Format(plan.TileBytes)} each, {plan.Threads} at a time");
         using var writer = new MatrixFileWriter(
             request.Output, context.Settings.Force, provenance, facts.PixelCount, facts.Manifest.Modes.ModeCount);
         TransmissionMatrixFacts matrix =
@@ -54,7 +59,8 @@ internal sealed class StoredStages : IStages
     {
         RefuseTaken(request.Output, context);
         using var matrix = new MatrixFileReader(request.Input);
-        ChannelSettings settings = new() { Leading = request.Leading };
+        ChannelSettings settings = ChannelSettings.Within(context.MemoryBytes) with { Leading = request.Leading };
+        context.Explain($"memory {ByteSize.Format(context.MemoryBytes)}: tiles of {ByteSize.Format(settings.TileBytes)}, two at a time");
         var analysis = new ChannelAnalysis(matrix, matrix.Facts, request.Input, settings, Engine(context));
         StageProvenance provenance = Provenance.Of(context, [request.Input], settings);
         using var writer = new ChannelFileWriter(
@@ -111,11 +117,20 @@ internal sealed class StoredStages : IStages
     /// <summary>Before any long work: reading and digesting the input may take minutes.</summary>
     private static void RefuseTaken(string output, StageContext context) => AtomicOutput.RefuseTaken(output, context.Settings.Force);
 
-    private static ILinearAlgebraEngine Engine(StageContext context) =>
-        LinearAlgebraEngines.Choose(context.Settings.Engine) switch
+    private static ILinearAlgebraEngine Engine(StageContext context)
+    {
+        EngineSelection found = LinearAlgebraEngines.Choose(context.Settings.Engine);
+        if (found.Engine is not ILinearAlgebraEngine engine)
         {
-            { Engine: ILinearAlgebraEngine engine } => engine,
-            { Explanation: string why } => throw new NumericalException(why, "install OpenBLAS, or use --engine managed"),
-            _ => throw new NumericalException("no linear-algebra engine was found", "use --engine managed"),
-        };
+            throw new NumericalException(found.Explanation ?? "no linear-algebra engine was found", "install OpenBLAS, or use --engine managed");
+        }
+
+        if (found.Explanation is string fallback)
+        {
+            context.Note(fallback);
+        }
+
+        context.Explain($"engine {engine.Description}");
+        return engine;
+    }
 }

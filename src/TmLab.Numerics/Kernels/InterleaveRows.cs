@@ -64,6 +64,7 @@ public static class InterleaveRows
     }
 
     // Four modes × eight pixels at a time: parts are interleaved to complex numbers, then 4 × 4 blocks of these are transposed.
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private static void EightRows(in ModePlanes planes, int lane, ReadOnlySpan<float> scale, Span<Complex64> rows)
     {
         int modes = planes.Rows;

@@ -1,4 +1,5 @@
 using System.Numerics;
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 using TmLab.Numerics.Matrices;
 
@@ -23,6 +24,7 @@ public static class PlaneProduct
         }
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private static void Combine(in ModePlanes planes, int row, ReadOnlySpan<Complex64> weights)
     {
         Span<Vector<float>> re = MemoryMarshal.Cast<float, Vector<float>>(planes.RealRow(row));

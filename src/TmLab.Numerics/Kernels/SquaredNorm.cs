@@ -1,4 +1,5 @@
 using System.Numerics;
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 
 namespace TmLab.Numerics.Kernels;
@@ -26,6 +27,7 @@ public static class SquaredNorm
     }
 
     // Sixteen partial sums whatever the register's width, so that the result does not depend on it.
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private static double OfRun(ReadOnlySpan<float> run)
     {
         Span<float> partial = stackalloc float[16];

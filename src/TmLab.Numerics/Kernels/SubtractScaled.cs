@@ -1,4 +1,5 @@
 using System.Numerics;
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 
 namespace TmLab.Numerics.Kernels;
@@ -11,6 +12,7 @@ public static class SubtractScaled
     /// <param name="values">x, as long.</param>
     /// <param name="factor">The factor.</param>
     /// <exception cref="ArgumentException">Lengths disagree or leave a tail.</exception>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public static void Run(Span<float> target, ReadOnlySpan<float> values, float factor)
     {
         Preconditions.SameLength(values.Length, target.Length);

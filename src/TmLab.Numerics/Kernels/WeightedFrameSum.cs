@@ -19,6 +19,7 @@ public static class WeightedFrameSum
     /// <param name="real">Takes the real parts; its length is the number of pixels, a multiple of <see cref="ModePlanes.LaneMultiple"/>.</param>
     /// <param name="imaginary">Takes the imaginary parts, as long as <paramref name="real"/>.</param>
     /// <exception cref="ArgumentException">Lengths disagree or a frame lies outside the counts.</exception>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public static void Run(
         ReadOnlySpan<ushort> counts,
         int stride,

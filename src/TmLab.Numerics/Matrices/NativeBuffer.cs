@@ -27,7 +27,8 @@ public sealed unsafe class NativeBuffer<T> : IDisposable
         Preconditions.InRange(length, 0, long.MaxValue / sizeof(T) / 2);
         Length = length;
         nuint bytes = checked((nuint)(length * sizeof(T)) + SlackBytes);
-        _pointer = (T*)NativeMemory.AlignedAlloc(bytes, AlignmentBytes);
+        _pointer = (T*)NativeMemory.AlignedAlloc(bytes, bytes >= LargePages.WorthwhileBytes ? LargePages.PageBytes : AlignmentBytes);
+        LargePages.Advise(_pointer, bytes);
         NativeMemory.Clear(_pointer, bytes);
         GC.AddMemoryPressure((long)bytes);
     }

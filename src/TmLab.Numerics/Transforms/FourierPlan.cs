@@ -1,4 +1,5 @@
 using System.Numerics;
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 
 namespace TmLab.Numerics.Transforms;
@@ -155,6 +156,7 @@ public sealed class FourierPlan
             return (cos, sin);
         }
 
+        [MethodImpl(MethodImplOptions.AggressiveOptimization)]
         private void Combine(
             ReadOnlySpan<float> inRe, ReadOnlySpan<float> inIm, int start, int table, Span<float> outRe, Span<float> outIm)
         {

@@ -85,6 +85,7 @@ public static class WalshHadamard
     }
 
     // Rows row, row + step, … , row + 7 step hold one butterfly of radix 8: three radix-2 levels without leaving the registers.
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private static void Pass8(Span<float> plane, int rows, int step, int lanes)
     {
         ref float origin = ref MemoryMarshal.GetReference(plane);
@@ -99,6 +100,7 @@ public static class WalshHadamard
         }
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private static void Pass4(Span<float> plane, int rows, int step, int lanes)
     {
         ref float origin = ref MemoryMarshal.GetReference(plane);
@@ -113,6 +115,7 @@ public static class WalshHadamard
         }
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private static void Pass2(Span<float> plane, int rows, int step, int lanes)
     {
         ref float origin = ref MemoryMarshal.GetReference(plane);

@@ -53,6 +53,9 @@ internal abstract class ReservedDataset
 internal sealed class ReservedDataset<T> : ReservedDataset
     where T : unmanaged
 {
+    // Writes of at least this many bytes are sent on their way to the disk at once.
+    private const long WorthCarrying = 4 << 20;
+
     private string _finalPath = "";
     private SafeFileHandle? _file;
 
@@ -105,6 +108,11 @@ internal sealed class ReservedDataset<T> : ReservedDataset
             WritePiece(file, piece, Offset + byteOffset);
             rest = rest[(piece.Length / sizeof(T))..];
             byteOffset += piece.Length;
+        }
+
+        if (elements.Length * (long)sizeof(T) >= WorthCarrying)
+        {
+            EarlyWriteback.Begin(file, Offset + (firstElement * sizeof(T)), elements.Length * (long)sizeof(T));
         }
     }
 

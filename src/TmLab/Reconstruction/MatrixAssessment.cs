@@ -34,8 +34,9 @@ internal sealed class MatrixAssessment
         MeasurementManifest manifest = _facts.Manifest;
         double[] rowVariance = RowVariance();
         bool[] modeValid = ModeValid();
+        double meanGain = _modeGain.Average();
         (ErrorBudget budget, DecorrelationFacts decorrelation) =
-            BudgetEstimation.Make(_evidence, [.. rowVariance.Select(v => v * _modeGain.Sum())]);
+            BudgetEstimation.Make(_evidence, [.. rowVariance.Select(v => v * meanGain * _modeGain.Length)]);
         DriftFacts drift = _drift with { Decorrelation = decorrelation };
         return new TransmissionMatrixFacts(
             manifest.Title,
@@ -50,7 +51,7 @@ internal sealed class MatrixAssessment
                 [.. Enumerable.Range(0, pixels).Select(p => p % width)],
                 [.. _pixels.Valid],
                 [.. _survey.Visibility],
-                [.. rowVariance.Select(v => (float)Math.Sqrt(v * _modeGain.Average()))])
+                [.. rowVariance.Select(v => (float)Math.Sqrt(v * meanGain))])
             {
                 Reason = _pixels.Reason,
             },
@@ -99,8 +100,9 @@ internal sealed class MatrixAssessment
             OutlyingModes = _evidence.OutlyingModes,
             Budget = budget,
         };
+        bool dependent = _evidence.Basis is CustomBasis custom && custom.Condition > CustomBasis.LargestCondition;
         bool noiseUnknown = _survey.CountVariance.All(float.IsNaN);
-        return quality with { Warnings = [.. MatrixWarnings.For(_facts, drift, _pixels, quality, noiseUnknown, _settings)] };
+        return quality with { Warnings = [.. MatrixWarnings.For(_facts, drift, _pixels, quality, noiseUnknown, dependent, _settings)] };
     }
 
     private double MeanOverValid(double[] values) =>

@@ -11,8 +11,8 @@ internal static class MatrixWarnings
 
     /// <summary>All of it, the gravest first.</summary>
     public static IEnumerable<string> For(
-        MeasurementFacts facts, DriftFacts drift, PixelJudgement pixels, MatrixQuality quality, bool noiseUnknown, ReconstructionSettings settings) =>
-        [.. OfFrames(quality), .. OfDrift(facts, drift, settings), .. OfPixels(pixels), .. OfModes(quality), .. OfNoise(noiseUnknown)];
+        MeasurementFacts facts, DriftFacts drift, PixelJudgement pixels, MatrixQuality quality, bool noiseUnknown, bool dependentPatterns, ReconstructionSettings settings) =>
+        [.. OfFrames(quality), .. OfDrift(facts, drift, settings), .. OfPixels(pixels), .. OfModes(quality, dependentPatterns), .. OfNoise(noiseUnknown)];
 
     private static IEnumerable<string> OfFrames(MatrixQuality quality)
     {
@@ -92,8 +92,13 @@ internal static class MatrixWarnings
         (PixelReason.LowVisibility, "has hardly any fringes", "have hardly any fringes"),
     ];
 
-    private static IEnumerable<string> OfModes(MatrixQuality quality)
+    private static IEnumerable<string> OfModes(MatrixQuality quality, bool dependentPatterns)
     {
+        if (dependentPatterns)
+        {
+            yield return "The custom patterns are nearly dependent: what they do not tell apart is missing from the matrix. Choose patterns that span all modes.";
+        }
+
         if (!quality.OutlyingModes.IsEmpty)
         {
             string listed = string.Join(", ", quality.OutlyingModes.Take(MostFindings));

@@ -1,6 +1,6 @@
 using System.Collections.Immutable;
-using System.Numerics;
 using TmLab.Measurement;
+using TmLab.Numerics.Kernels;
 
 namespace TmLab.Reconstruction;
 
@@ -28,14 +28,9 @@ internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, fl
         var options = new ParallelOptions { MaxDegreeOfParallelism = settings.Threads, CancellationToken = cancel };
         Parallel.For(0, (pixels + ChunkPixels - 1) / ChunkPixels, options, chunk =>
         {
-            int first = chunk * ChunkPixels;
-            var totals = new ChunkTotals(facts, first, Math.Min(ChunkPixels, pixels - first));
-            for (int g = 0; g < groups.Length; g++)
-            {
-                totals.Add(reader, groups[g], fits[g]);
-            }
-
-            totals.Store(survey);
+            int first = chunk * ChunkPixels, count = Math.Min(ChunkPixels, pixels - first);
+            FringeStatistics totals = Chunk(reader, facts, groups, fits, first, count);
+            survey.Store(totals, facts.Manifest.Camera, fits, first, count);
         });
         return survey;
     }
@@ -45,79 +40,46 @@ internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, fl
             ? groups
             : [.. Enumerable.Range(0, count).Select(i => groups[(int)((long)i * (groups.Length - 1) / Math.Max(1, count - 1))])];
 
-    private sealed class ChunkTotals(MeasurementFacts facts, int first, int pixels)
+    private static FringeStatistics Chunk(
+        IFrameBlockReader reader, MeasurementFacts facts, StepGroup[] groups, StepFit[] fits, int first, int count)
     {
-        private readonly double[] _visibility = new double[pixels];
-        private readonly double[] _residual = new double[pixels];
-        private readonly double[] _background = new double[pixels];
-        private readonly int[] _saturated = new int[pixels];
-        private ushort[] _counts = [];
-        private int _groups;
-        private int _frames;
-        private int _freedom;
-
-        public void Add(IFrameBlockReader reader, StepGroup group, StepFit fit)
+        var dark = new float[TileKernel.RoundUp(count)];
+        facts.DarkCounts.AsSpan(first, count).CopyTo(dark);
+        var totals = new FringeStatistics(dark, facts.Manifest.Camera.FullScaleCounts);
+        var counts = new ushort[dark.Length * fits.Max(f => f.FrameCount)];
+        for (int g = 0; g < groups.Length; g++)
         {
-            int steps = fit.FrameCount;
-            Array.Resize(ref _counts, steps * pixels);
-            for (int s = 0; s < steps; s++)
+            for (int s = 0; s < fits[g].FrameCount; s++)
             {
-                reader.Read(group.Frames[s], 1, first, pixels, _counts.AsSpan(s * pixels, pixels));
+                reader.Read(groups[g].Frames[s], 1, first, count, counts.AsSpan(s * dark.Length, count));
             }
 
-            for (int p = 0; p < pixels; p++)
-            {
-                AddPixel(fit, p);
-            }
-
-            _groups++;
-            _frames += steps;
-            _freedom += steps - 3;
+            totals.Add(counts.AsSpan(0, dark.Length * fits[g].FrameCount), fits[g].ForStatistics());
         }
 
-        public void Store(PixelSurvey survey)
+        return totals;
+    }
+
+    private void Store(FringeStatistics totals, CameraDescription camera, StepFit[] fits, int first, int count)
+    {
+        int frames = fits.Sum(f => f.FrameCount), freedom = fits.Sum(f => f.FrameCount - 3);
+        for (int p = 0; p < count; p++)
         {
-            for (int p = 0; p < pixels; p++)
-            {
-                survey.Visibility[first + p] = (float)(_visibility[p] / _groups);
-                survey.Light[first + p] = (float)(_background[p] / _groups);
-                survey.SaturatedShare[first + p] = (float)_saturated[p] / _frames;
-                survey.CountVariance[first + p] = (float)(_freedom > 0 ? _residual[p] / _freedom : ModelVariance(_background[p] / _groups));
-            }
+            Visibility[first + p] = totals.Visibility[p] / fits.Length;
+            Light[first + p] = totals.Level[p] / fits.Length;
+            SaturatedShare[first + p] = totals.Saturated[p] / frames;
+            CountVariance[first + p] = freedom > 0 ? totals.SquaredResidual[p] / freedom : ModelVariance(camera, totals.Level[p] / fits.Length);
+        }
+    }
+
+    private static float ModelVariance(CameraDescription camera, double level)
+    {
+        if (camera.ElectronsPerCount is not double gain)
+        {
+            return float.NaN;
         }
 
-        private void AddPixel(StepFit fit, int p)
-        {
-            double a = 0, re = 0, im = 0;
-            for (int s = 0; s < fit.FrameCount; s++)
-            {
-                double count = _counts[(s * pixels) + p];
-                a += fit.Background[s] * count;
-                re += fit.Field[s].Real * count;
-                im += fit.Field[s].Imaginary * count;
-                _saturated[p] += count >= facts.Manifest.Camera.FullScaleCounts ? 1 : 0;
-            }
-
-            double level = a - facts.DarkCounts[first + p];
-            _background[p] += level;
-            _visibility[p] += level > 0 ? 2 * Math.Sqrt((re * re) + (im * im)) / level : 0;
-            for (int s = 0; s < fit.FrameCount; s++)
-            {
-                double residual = _counts[(s * pixels) + p] - fit.Model(s, a, new Complex(re, im));
-                _residual[p] += residual * residual;
-            }
-        }
-
-        private double ModelVariance(double level)
-        {
-            CameraDescription camera = facts.Manifest.Camera;
-            if (camera.ElectronsPerCount is not double gain)
-            {
-                return double.NaN;
-            }
-
-            double read = (camera.ReadNoiseElectrons ?? 0) / gain;
-            return (Math.Max(level, 0) / gain) + (read * read) + (1.0 / 12);
-        }
+        double read = (camera.ReadNoiseElectrons ?? 0) / gain;
+        return (float)((Math.Max(level, 0) / gain) + (read * read) + (1.0 / 12));
     }
 }

@@ -29,6 +29,9 @@ public sealed record ReconstructionSettings
     /// <summary>Memory that the tiles may take, bytes.</summary>
     public long MemoryBytes { get; init; } = 1L << 30;
 
+    /// <summary>A tile's counts and rows together take at most this, bytes, so that reading has long runs and the buffers stay small.</summary>
+    public long LargestTileBytes { get; init; } = 64L << 20;
+
     /// <summary>Number of threads; the results do not depend on it.</summary>
     public int Threads { get; init; } = Environment.ProcessorCount;
 

@@ -1,4 +1,5 @@
 using System.Numerics;
+using TmLab.Numerics.Kernels;
 
 namespace TmLab.Reconstruction;
 
@@ -56,6 +57,14 @@ public sealed class StepFit
     /// <summary>The model's intensity in frame <paramref name="s"/> for background a and field D: a + 2 Re(D e^{iθ_s}).</summary>
     public double Model(int s, double a, Complex d) =>
         a + (2 * ((d.Real * Math.Cos(_theta[s])) - (d.Imaginary * Math.Sin(_theta[s]))));
+
+    /// <summary>The fit in the form that the statistics kernel takes.</summary>
+    internal FringeWeights ForStatistics() => new(
+        [.. Background.Select(w => (float)w)],
+        [.. Field.Select(w => (float)w.Real)],
+        [.. Field.Select(w => (float)w.Imaginary)],
+        [.. _theta.Select(t => (float)Math.Cos(t))],
+        [.. _theta.Select(t => (float)Math.Sin(t))]);
 
     private static double[,] NormalMatrix(ReadOnlySpan<double> theta)
     {

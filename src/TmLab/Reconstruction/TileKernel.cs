@@ -11,8 +11,8 @@ namespace TmLab.Reconstruction;
 /// </summary>
 internal sealed class TileKernel : IDisposable
 {
-    // Half of a 512-KiB second-level cache for the two planes.
-    private const int PlaneBytes = 128 * 1024;
+    // One plane in half of a 512-KiB second-level cache: the transform works on one at a time.
+    private const int PlaneBytes = 256 * 1024;
 
     private readonly IPatternBasis _basis;
     private readonly FrameWeightTable _weights;

@@ -13,9 +13,6 @@ namespace TmLab.Reconstruction;
 /// </summary>
 internal sealed class TiledRows
 {
-    // Beyond this a tile no longer fits the last-level cache and nothing is gained.
-    private const long LargestTileBytes = 32 << 20;
-
     private readonly IFrameBlockReader _reader;
     private readonly IPatternBasis _basis;
     private readonly FrameWeightTable _weights;
@@ -36,28 +33,20 @@ internal sealed class TiledRows
         _pixels = reader.FrameSize.PixelCount;
     }
 
-    /// <summary>Pixels a tile: the largest number within the memory budget and the cache.</summary>
-    public int TilePixels
-    {
-        get
-        {
-            long bytesPerPixel = (2L * _reader.FrameCount) + (8L * _basis.ModeCount);
-            long budget = Math.Min(_settings.MemoryBytes / Math.Max(1, _settings.Threads), LargestTileBytes);
-            long fitting = budget / bytesPerPixel / TileKernel.SmallestLanes * TileKernel.SmallestLanes;
-            return (int)Math.Clamp(fitting, TileKernel.SmallestLanes, _pixels);
-        }
-    }
+    /// <summary>How the pixels are divided.</summary>
+    public TilePlan Plan => TilePlan.For(_reader.FrameCount, _basis.ModeCount, _pixels, _settings);
 
     /// <summary>Writes all rows and returns Σ_n |T[p, n]|² of each.</summary>
     public double[] Run(IRowBlockWriter rows, IProgress<StageProgress>? progress, CancellationToken cancel)
     {
-        int tilePixels = TilePixels;
+        TilePlan plan = Plan;
+        int tilePixels = plan.TilePixels;
         var energy = new double[_pixels];
         long done = 0;
-        var options = new ParallelOptions { MaxDegreeOfParallelism = _settings.Threads, CancellationToken = cancel };
+        var options = new ParallelOptions { MaxDegreeOfParallelism = plan.Threads, CancellationToken = cancel };
         Parallel.For(
             0,
-            (_pixels + tilePixels - 1) / tilePixels,
+            plan.TileCount,
             options,
             () => new Workspace(this, tilePixels),
             (tile, _, workspace) =>

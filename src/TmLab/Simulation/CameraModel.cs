@@ -1,3 +1,4 @@
+using TmLab.Numerics.Statistics;
 using TmLab.Quantities;
 
 namespace TmLab.Simulation;
@@ -45,7 +46,7 @@ internal sealed class CameraModel
     {
         for (int pixel = 0; pixel < meanElectrons.Length; pixel++)
         {
-            RandomBlock block = _streams.Block(RandomPurpose.CameraNoise, frame, pixel);
+            PhiloxBlock block = _streams.Block(RandomPurpose.CameraNoise, frame, pixel);
             double electrons = Read((double)meanElectrons[pixel] * _gain[pixel], block) + _offsetElectrons[pixel];
             double value = Math.Round((electrons / _camera.ElectronsPerCount) + _camera.OffsetCounts);
             counts[pixel] = (ushort)Math.Clamp(value, 0, _fullScale);
@@ -58,7 +59,7 @@ internal sealed class CameraModel
     }
 
     /// <summary>Photoelectrons with shot noise, cut at the full well, with read noise.</summary>
-    private double Read(double mean, in RandomBlock block)
+    private double Read(double mean, in PhiloxBlock block)
     {
         double normal = RandomStreams.NormalFromWords(block);
         double readNoise = _camera.ReadNoiseElectrons;

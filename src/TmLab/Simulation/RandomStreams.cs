@@ -1,3 +1,5 @@
+using TmLab.Numerics.Statistics;
+
 namespace TmLab.Simulation;
 
 /// <summary>What a random number is for; every purpose has streams of its own, so that switching one effect on leaves the others as they were.</summary>
@@ -29,8 +31,8 @@ internal readonly struct RandomStreams(ulong seed)
     private readonly uint _key1 = (uint)(seed >> 32);
 
     /// <summary>The four words at an address. Variant tells apart independent realisations of the same thing.</summary>
-    public RandomBlock Block(RandomPurpose purpose, int item, int index, int variant = 0) =>
-        Philox4x32.Block((uint)index, (uint)item, (uint)purpose, (uint)variant, _key0, _key1);
+    public PhiloxBlock Block(RandomPurpose purpose, int item, int index, int variant = 0) =>
+        Philox.At(new PhiloxBlock((uint)index, (uint)item, (uint)purpose, (uint)variant), _key0, _key1);
 
     /// <summary>A number uniform on [0, 1), 53 bits.</summary>
     public double Uniform(RandomPurpose purpose, int item, int index, int variant = 0) =>
@@ -45,24 +47,24 @@ internal readonly struct RandomStreams(ulong seed)
         ComplexNormalFromWords(Block(purpose, item, index, variant));
 
     /// <summary>Uniform on [0, 1) from words 0 and 1.</summary>
-    public static double UniformFromWords(in RandomBlock block) =>
-        ((((ulong)block.W0 << 32) | block.W1) >> 11) * TwoToMinus53;
+    public static double UniformFromWords(in PhiloxBlock block) =>
+        ((((ulong)block.X0 << 32) | block.X1) >> 11) * TwoToMinus53;
 
     /// <summary>
     /// Standard normal from words 2 and 3 (independent of <see cref="UniformFromWords"/> of the same block) by the transform of
     /// Box and Muller, Ann. Math. Stat. 29, 610 (1958). With a 32-bit uniform number the tail ends at 6.66 standard deviations.
     /// </summary>
-    public static double NormalFromWords(in RandomBlock block)
+    public static double NormalFromWords(in PhiloxBlock block)
     {
-        double radius = Math.Sqrt(-2 * PortableMath.Log((block.W2 + 1.0) * TwoToMinus32));
-        return radius * PortableMath.CosTurns(block.W3 * TwoToMinus32);
+        double radius = Math.Sqrt(-2 * PortableMath.Log((block.X2 + 1.0) * TwoToMinus32));
+        return radius * PortableMath.CosTurns(block.X3 * TwoToMinus32);
     }
 
     /// <summary>Box and Muller's pair as the two parts of a circular complex normal number: |z|² = −ln u is exponential, the phase uniform.</summary>
-    public static (double Real, double Imaginary) ComplexNormalFromWords(in RandomBlock block)
+    public static (double Real, double Imaginary) ComplexNormalFromWords(in PhiloxBlock block)
     {
-        double radius = Math.Sqrt(-PortableMath.Log((block.W2 + 1.0) * TwoToMinus32));
-        (double sin, double cos) = PortableMath.SinCosTurns(block.W3 * TwoToMinus32);
+        double radius = Math.Sqrt(-PortableMath.Log((block.X2 + 1.0) * TwoToMinus32));
+        (double sin, double cos) = PortableMath.SinCosTurns(block.X3 * TwoToMinus32);
         return (radius * cos, radius * sin);
     }
 }

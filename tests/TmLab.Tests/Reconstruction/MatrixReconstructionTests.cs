@@ -46,10 +46,20 @@ public sealed class MatrixReconstructionTests
     }
 
     [Fact]
+    public void Custom_patterns_that_do_not_span_the_modes_are_warned_of()
+    {
+        ImmutableArray<Complex> patterns = [.. Enumerable.Range(0, 16 * 16).Select(i => new Complex(i / 16 % 8 == i % 8 ? 1 : 0, 0))];
+        var modes = new ModeDescription(BasisKind.Custom, HadamardOrdering.Natural, 16, new GridShape(4, 4), "b.npy", null);
+        var bench = new ExactBench(modes, Schedule.ModeMajor(16, 4), Size, 2, customPatterns: patterns);
+        (_, TransmissionMatrixFacts facts) = Reconstruct(bench, new ReconstructionSettings());
+        Assert.Contains(facts.Quality.Warnings, w => w.Contains("nearly dependent", StringComparison.Ordinal));
+    }
+
+    [Fact]
     public void Drift_that_the_trackers_show_is_removed_and_its_path_reported()
     {
         static double Drift(ScheduledFrame f) => 0.02 * f.TimeS;
-        var bench = new ExactBench(Modes(BasisKind.Hadamard), WithTrackers(16, 4, every: 4), Size, 4, driftRad: Drift);
+        var bench = new ExactBench(Modes(BasisKind.Hadamard), TrackedSchedule.Make(16, 4, every: 4), Size, 4, driftRad: Drift);
         (InMemoryMatrix matrix, TransmissionMatrixFacts facts) = Reconstruct(bench, new ReconstructionSettings { Drift = DriftMethod.TrackersInterpolated });
         (InMemoryMatrix drifting, TransmissionMatrixFacts without) = Reconstruct(bench, new ReconstructionSettings { Drift = DriftMethod.None });
         Assert.True(bench.Fidelity(matrix, facts) > 0.999);
@@ -64,7 +74,7 @@ public sealed class MatrixReconstructionTests
     [Fact]
     public void A_tracker_gap_beyond_a_quarter_turn_is_warned_of_with_the_trackers_named()
     {
-        var bench = new ExactBench(Modes(BasisKind.Hadamard), WithTrackers(16, 4, every: 4), Size, 5, driftRad: f => f.Index >= 50 ? 2 : 0);
+        var bench = new ExactBench(Modes(BasisKind.Hadamard), TrackedSchedule.Make(16, 4, every: 4), Size, 5, driftRad: f => f.Index >= 50 ? 2 : 0);
         (_, TransmissionMatrixFacts facts) = Reconstruct(bench, new ReconstructionSettings());
         Assert.Contains(facts.Quality.Warnings, w => w.Contains("rad from the tracker at", StringComparison.Ordinal));
     }
@@ -177,7 +187,7 @@ public sealed class MatrixReconstructionTests
     }
 
     private static readonly Lazy<ExactBench> SharedBench =
-        new(() => new ExactBench(Modes(BasisKind.Hadamard), WithTrackers(16, 4, 5), Size, 12, driftRad: f => 0.01 * f.Index));
+        new(() => new ExactBench(Modes(BasisKind.Hadamard), TrackedSchedule.Make(16, 4, 5), Size, 12, driftRad: f => 0.01 * f.Index));
 
     private static ModeDescription Modes(BasisKind basis, HadamardOrdering ordering = HadamardOrdering.Natural) =>
         new(basis, ordering, 16, new GridShape(4, 4), null, null);
@@ -195,31 +205,6 @@ public sealed class MatrixReconstructionTests
                 Assert.True((matrix.Row(p)[n].ToComplex() - (factor * bench.Matrix[p, n])).Magnitude < factor * 0.05);
             }
         }
-    }
-
-    private static Schedule WithTrackers(int modes, int steps, int every)
-    {
-        var frames = new List<ScheduledFrame>();
-        void Show(FrameRole role, int mode)
-        {
-            for (int s = 0; s < steps; s++)
-            {
-                frames.Add(new ScheduledFrame(frames.Count, role, mode, s, 2 * Math.PI * s / steps, frames.Count));
-            }
-        }
-
-        for (int mode = 0; mode < modes; mode++)
-        {
-            if (mode % every == 0)
-            {
-                Show(FrameRole.Tracker, 0);
-            }
-
-            Show(FrameRole.Mode, mode);
-        }
-
-        Show(FrameRole.Tracker, 0);
-        return new Schedule([.. frames], true);
     }
 
     private static (InMemoryMatrix Matrix, TransmissionMatrixFacts Facts) Reconstruct(ExactBench bench, ReconstructionSettings settings) =>

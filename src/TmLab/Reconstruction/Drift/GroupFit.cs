@@ -1,4 +1,5 @@
 using System.Numerics;
+using System.Runtime.InteropServices;
 using TmLab.Numerics.LinearAlgebra;
 
 namespace TmLab.Reconstruction.Drift;
@@ -10,18 +11,19 @@ namespace TmLab.Reconstruction.Drift;
 /// </summary>
 internal sealed class GroupFit
 {
-    private const int PixelIterations = 2;
     private const int FewestPixels = 16;
 
     private readonly int[] _frames;
     private readonly PixelSample _sample;
-    private readonly Complex[] _field;
+    private readonly double[] _re;
+    private readonly double[] _im;
+    private readonly double[] _background;
 
     public GroupFit(int[] frames, double[] phaseRad, PixelSample sample)
     {
         _frames = frames;
         _sample = sample;
-        _field = new Complex[sample.Count];
+        (_re, _im, _background) = (new double[sample.Count], new double[sample.Count], new double[sample.Count]);
         PhaseRad = phaseRad;
         Gain = [.. frames.Select(_ => 1.0)];
         Information = new double[frames.Length, frames.Length];
@@ -39,61 +41,64 @@ internal sealed class GroupFit
     /// <summary>Inverse covariance of the phases, gains and fields marginalised, 1/rad²; the common constant is not determined.</summary>
     public double[,] Information { get; private set; }
 
-    /// <summary>D at the sample pixels; NaN where a frame is saturated.</summary>
-    public ReadOnlySpan<Complex> Field => _field;
+    /// <summary>a at the sample pixels; NaN where a frame is saturated.</summary>
+    public ReadOnlySpan<double> Background => _background;
+
+    /// <summary>Re D at the sample pixels; NaN where a frame is saturated.</summary>
+    public ReadOnlySpan<double> FieldReal => _re;
+
+    /// <summary>Im D at the sample pixels; NaN where a frame is saturated.</summary>
+    public ReadOnlySpan<double> FieldImaginary => _im;
 
     private int Steps => _frames.Length;
 
-    /// <summary>The plain least-squares fit at the present phases, pixel by pixel: D, and a for the coherence model.</summary>
-    /// <returns>Whether the phases determine the field.</returns>
-    public bool FitFields(Span<double> background)
+    /// <summary>The plain least-squares fit at the present phases, pixel by pixel: a and D. NaN everywhere where the phases do not determine them.</summary>
+    public void FitFields()
     {
         StepFit? fit = StepFit.TryCreate(PhaseRad);
-        for (int p = 0; p < _field.Length; p++)
+        double start = fit is null ? double.NaN : 0;
+        _background.AsSpan().Fill(start);
+        _re.AsSpan().Fill(start);
+        _im.AsSpan().Fill(start);
+        for (int s = 0; fit is not null && s < Steps; s++)
         {
-            Complex field = 0;
-            double a = 0;
-            for (int s = 0; fit is not null && s < Steps; s++)
-            {
-                double count = _sample.Frame(_frames[s])[p] / Gain[s];
-                a += fit.Background[s] * count;
-                field += fit.Field[s] * count;
-            }
-
-            background[p] = a;
-            _field[p] = field;
+            ReadOnlySpan<double> counts = _sample.Frame(_frames[s]);
+            AddScaled(_background, counts, fit.Background[s] / Gain[s]);
+            AddScaled(_re, counts, fit.Field[s].Real / Gain[s]);
+            AddScaled(_im, counts, fit.Field[s].Imaginary / Gain[s]);
         }
-
-        return fit is not null;
     }
 
-    /// <summary>One Gauss–Newton step on phases and gains; adds each pixel's squared residual to <paramref name="residual"/>.</summary>
+    /// <summary>One Gauss–Newton step on phases and gains; writes each pixel's squared residual, 0 where a pixel took no part.</summary>
     /// <returns>The largest change of a phase, radians.</returns>
     public double Improve(CoherenceModel model, double gainSpread, Span<double> residual)
     {
-        var normal = new double[2 * Steps, 2 * Steps];
-        var right = new double[2 * Steps];
-        var pixel = new PixelEquations(Steps, PhaseRad, Gain);
+        var equations = new GroupEquations(PhaseRad, Gain);
         int used = 0;
-        for (int p = 0; p < _field.Length; p++)
+        for (int p = 0; p < _re.Length; p += Vector<double>.Count)
         {
-            if (!double.IsFinite(model.Variance[p]) || Complex.IsNaN(_field[p]))
-            {
-                continue;
-            }
-
-            pixel.Load(_sample, _frames, p, model.Alpha[p], model.Beta[p]);
-            for (int i = 0; i < PixelIterations; i++)
-            {
-                _field[p] += pixel.FieldStep(_field[p]);
-            }
-
-            residual[p] += pixel.Accumulate(_field[p], 1 / model.Variance[p], normal, right);
-            used++;
+            var re = new Vector<double>(_re, p);
+            var im = new Vector<double>(_im, p);
+            equations.Load(_sample, _frames, p, model, re);
+            Vector<double> squares = equations.Accumulate(ref re, ref im);
+            re.CopyTo(_re, p);
+            im.CopyTo(_im, p);
+            squares.CopyTo(residual[p..]);
+            used += equations.PixelsInUse;
         }
 
         // A group that is saturated nearly everywhere says nothing: its phases stay, and its information is nought.
-        return used < FewestPixels ? 0 : Solve(normal, right, gainSpread);
+        return used < FewestPixels ? 0 : Solve(equations.NormalMatrix(), equations.RightHandSide(), gainSpread);
+    }
+
+    private static void AddScaled(Span<double> target, ReadOnlySpan<double> values, double factor)
+    {
+        Span<Vector<double>> y = MemoryMarshal.Cast<double, Vector<double>>(target);
+        ReadOnlySpan<Vector<double>> x = MemoryMarshal.Cast<double, Vector<double>>(values);
+        for (int v = 0; v < y.Length; v++)
+        {
+            y[v] += x[v] * factor;
+        }
     }
 
     // The gains get a prior of their known spread; the phases' common constant, which nothing determines, is held.
@@ -122,104 +127,5 @@ internal sealed class GroupFit
         PhaseRad = [.. PhaseRad.Select((t, s) => t + step[s])];
         Gain = [.. Gain.Select((g, s) => g + step[Steps + s])];
         return step.Take(Steps).Max(Math.Abs);
-    }
-
-    /// <summary>The equations of one pixel, its field eliminated.</summary>
-    private sealed class PixelEquations
-    {
-        private readonly int _steps;
-        private readonly double[] _cos;
-        private readonly double[] _sin;
-        private readonly double[] _gain;
-        private readonly double[] _counts;
-        private readonly double[] _model;
-        private readonly double[] _rest;
-        private readonly double[] _jx;
-        private readonly double[] _jy;
-        private readonly double[] _byPhase;
-        private double _alpha;
-        private double _beta;
-        private double _xx;
-        private double _xy;
-        private double _yy;
-
-        public PixelEquations(int steps, double[] phase, double[] gain)
-        {
-            _steps = steps;
-            _gain = gain;
-            _cos = [.. phase.Select(Math.Cos)];
-            _sin = [.. phase.Select(Math.Sin)];
-            (_counts, _model, _rest) = (new double[steps], new double[steps], new double[steps]);
-            (_jx, _jy, _byPhase) = (new double[steps], new double[steps], new double[steps]);
-        }
-
-        public void Load(PixelSample sample, int[] frames, int pixel, double alpha, double beta)
-        {
-            (_alpha, _beta) = (alpha, beta);
-            for (int s = 0; s < _steps; s++)
-            {
-                _counts[s] = sample.Frame(frames[s])[pixel];
-            }
-        }
-
-        /// <summary>The least-squares step of D at fixed phases.</summary>
-        public Complex FieldStep(Complex field)
-        {
-            Linearise(field);
-            double bx = 0, by = 0;
-            for (int s = 0; s < _steps; s++)
-            {
-                bx += _jx[s] * _rest[s];
-                by += _jy[s] * _rest[s];
-            }
-
-            double determinant = (_xx * _yy) - (_xy * _xy);
-            return new Complex(((_yy * bx) - (_xy * by)) / determinant, ((_xx * by) - (_xy * bx)) / determinant);
-        }
-
-        /// <summary>Adds A†Q A and A†Q r, with A the derivatives by phases and gains and Q what is orthogonal to the field's.</summary>
-        public double Accumulate(Complex field, double weight, double[,] normal, double[] right)
-        {
-            Linearise(field);
-            double determinant = (_xx * _yy) - (_xy * _xy);
-            double squares = 0;
-            for (int i = 0; i < _steps; i++)
-            {
-                squares += _rest[i] * _rest[i];
-                double ux = ((_yy * _jx[i]) - (_xy * _jy[i])) / determinant;
-                double uy = ((_xx * _jy[i]) - (_xy * _jx[i])) / determinant;
-                for (int j = 0; j < _steps; j++)
-                {
-                    double q = (i == j ? 1 : 0) - (ux * _jx[j]) - (uy * _jy[j]);
-                    double weighted = weight * q;
-                    normal[i, j] += _byPhase[i] * weighted * _byPhase[j];
-                    normal[i, _steps + j] += _byPhase[i] * weighted * _model[j];
-                    normal[_steps + i, j] += _model[i] * weighted * _byPhase[j];
-                    normal[_steps + i, _steps + j] += _model[i] * weighted * _model[j];
-                    right[i] += _byPhase[i] * weighted * _rest[j];
-                    right[_steps + i] += _model[i] * weighted * _rest[j];
-                }
-            }
-
-            return squares;
-        }
-
-        private void Linearise(Complex field)
-        {
-            (double x, double y) = (field.Real, field.Imaginary);
-            double level = _alpha + (_beta * ((x * x) + (y * y)));
-            (_xx, _xy, _yy) = (0, 0, 0);
-            for (int s = 0; s < _steps; s++)
-            {
-                _model[s] = level + (2 * ((x * _cos[s]) - (y * _sin[s])));
-                _rest[s] = _counts[s] - (_gain[s] * _model[s]);
-                _byPhase[s] = -2 * _gain[s] * ((x * _sin[s]) + (y * _cos[s]));
-                _jx[s] = 2 * _gain[s] * ((_beta * x) + _cos[s]);
-                _jy[s] = 2 * _gain[s] * ((_beta * y) - _sin[s]);
-                _xx += _jx[s] * _jx[s];
-                _xy += _jx[s] * _jy[s];
-                _yy += _jy[s] * _jy[s];
-            }
-        }
     }
 }

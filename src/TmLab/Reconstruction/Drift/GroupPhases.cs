@@ -50,25 +50,25 @@ internal sealed class GroupPhases
         return phases.Run(cancel) ? phases : null;
     }
 
-    /// <summary>Σ_p D_k conj(D_0) over the sample with pixels left out where either is unknown, and the two energies.</summary>
+    /// <summary>Σ_p D_a conj(D_b) over the sample, pixels left out where either is unknown, the two energies, and the number of pixels.</summary>
     public (Complex Overlap, double EnergyA, double EnergyB, int Pixels) Overlap(int a, int b)
     {
-        Complex overlap = 0;
-        double energyA = 0, energyB = 0;
+        ReadOnlySpan<double> xr = Fits[a].FieldReal, xi = Fits[a].FieldImaginary, yr = Fits[b].FieldReal, yi = Fits[b].FieldImaginary;
+        double re = 0, im = 0, energyA = 0, energyB = 0;
         int pixels = 0;
-        for (int p = 0; p < _sample.Count; p++)
+        for (int p = 0; p < xr.Length; p++)
         {
-            Complex x = Fits[a].Field[p], y = Fits[b].Field[p];
-            if (Complex.IsFinite(x) && Complex.IsFinite(y))
+            if (!double.IsNaN(xr[p]) && !double.IsNaN(yr[p]))
             {
-                overlap += x * Complex.Conjugate(y);
-                energyA += (x.Real * x.Real) + (x.Imaginary * x.Imaginary);
-                energyB += (y.Real * y.Real) + (y.Imaginary * y.Imaginary);
+                re += (xr[p] * yr[p]) + (xi[p] * yi[p]);
+                im += (xi[p] * yr[p]) - (xr[p] * yi[p]);
+                energyA += (xr[p] * xr[p]) + (xi[p] * xi[p]);
+                energyB += (yr[p] * yr[p]) + (yi[p] * yi[p]);
                 pixels++;
             }
         }
 
-        return (overlap, energyA, energyB, pixels);
+        return (new Complex(re, im), energyA, energyB, pixels);
     }
 
     /// <summary>
@@ -76,38 +76,26 @@ internal sealed class GroupPhases
     /// </summary>
     public (double Measured, double WithoutNoise) Similarity(int a, int b)
     {
-        Complex overlap = 0;
-        double energyA = 0, energyB = 0, noiseA = 0, noiseB = 0;
-        (double gainA, double gainB) = (NoiseGain(a), NoiseGain(b));
-        for (int p = 0; p < _sample.Count; p++)
-        {
-            Complex x = Fits[a].Field[p], y = Fits[b].Field[p];
-            if (Complex.IsFinite(x) && Complex.IsFinite(y) && double.IsFinite(PixelVariance[p]))
-            {
-                overlap += x * Complex.Conjugate(y);
-                (energyA, energyB) = (energyA + Square(x), energyB + Square(y));
-                (noiseA, noiseB) = (noiseA + (gainA * PixelVariance[p]), noiseB + (gainB * PixelVariance[p]));
-            }
-        }
-
-        double squared = Square(overlap);
-        double left = Math.Max(energyA - noiseA, 0) * Math.Max(energyB - noiseB, 0);
+        (Complex overlap, double energyA, double energyB, _) = Overlap(a, b);
+        double left = Math.Max(energyA - NoiseEnergy(a), 0) * Math.Max(energyB - NoiseEnergy(b), 0);
+        double squared = (overlap.Real * overlap.Real) + (overlap.Imaginary * overlap.Imaginary);
         return (squared / (energyA * energyB), a == b ? 1 : squared / left);
     }
 
     /// <summary>A group's squared residual in units of its fringes' energy.</summary>
-    public double ResidualShare(int group)
+    public double ResidualShare(int group) => _residual[group] / (2 * Fits[group].PhaseRad.Length * Overlap(group, group).EnergyA);
+
+    private double NoiseEnergy(int group)
     {
-        double fringes = 0;
-        foreach (Complex d in Fits[group].Field)
+        double gain = StepFit.TryCreate(Fits[group].PhaseRad)?.FieldVariance ?? double.NaN, sum = 0;
+        ReadOnlySpan<double> field = Fits[group].FieldReal;
+        for (int p = 0; p < field.Length; p++)
         {
-            fringes += Complex.IsFinite(d) ? 2 * Fits[group].PhaseRad.Length * Square(d) : 0;
+            sum += double.IsNaN(field[p]) || !double.IsFinite(PixelVariance[p]) ? 0 : gain * PixelVariance[p];
         }
 
-        return _residual[group] / fringes;
+        return sum;
     }
-
-    private double NoiseGain(int group) => StepFit.TryCreate(Fits[group].PhaseRad)?.FieldVariance ?? double.NaN;
 
     private bool Run(CancellationToken cancel)
     {
@@ -120,8 +108,9 @@ internal sealed class GroupPhases
         double largestStep = double.PositiveInfinity;
         for (int round = 0; round < MostRounds && largestStep > ConvergedRad; round++)
         {
-            CoherenceModel model = FitModel(variance, cancel);
-            if (model.Variance.Count(double.IsFinite) < FewestPixels)
+            ForEachGroup(k => Fits[k].FitFields(), cancel);
+            var model = CoherenceModel.Fit(Fits, _sample.Count, variance);
+            if (model.UsablePixels < FewestPixels)
             {
                 return false;
             }
@@ -134,27 +123,6 @@ internal sealed class GroupPhases
         return true;
     }
 
-    private CoherenceModel FitModel(double[]? variance, CancellationToken cancel)
-    {
-        var backgrounds = new double[Fits.Length][];
-        ForEachGroup(k =>
-        {
-            backgrounds[k] = new double[_sample.Count];
-            Fits[k].FitFields(backgrounds[k]);
-        }, cancel);
-        int pixels = _sample.Count;
-        (double[] alpha, double[] beta, double[] spread) = (new double[pixels], new double[pixels], new double[pixels]);
-        Parallel.For(0, pixels, Options(cancel), p =>
-        {
-            double[] a = [.. backgrounds.Select(b => b[p])];
-            double[] q = [.. Fits.Select(f => Square(f.Field[p]))];
-            bool usable = CoherenceModel.TryFit(a, q, out alpha[p], out beta[p]);
-            // Before residuals are known, shot noise gives the pixels' relative weights.
-            spread[p] = usable ? variance?[p] ?? Math.Max(alpha[p], 1) : double.PositiveInfinity;
-        });
-        return new CoherenceModel(alpha, beta, spread);
-    }
-
     /// <summary>One step for every group; returns each pixel's variance about the model, and the largest step.</summary>
     private (double[] Variance, double LargestStepRad) ImproveAll(CoherenceModel model, CancellationToken cancel)
     {
@@ -165,20 +133,7 @@ internal sealed class GroupPhases
             residuals[k] = new double[_sample.Count];
             steps[k] = Fits[k].Improve(model, _settings.PowerSpread, residuals[k]);
         }, cancel);
-        var variance = new double[_sample.Count];
-        for (int p = 0; p < variance.Length; p++)
-        {
-            double sum = 0;
-            int freedom = 0;
-            for (int k = 0; k < Fits.Length; k++)
-            {
-                sum += residuals[k][p];
-                freedom += residuals[k][p] > 0 ? Fits[k].PhaseRad.Length - 2 : 0;
-            }
-
-            variance[p] = freedom > 0 ? Math.Max(sum / freedom, 1.0 / 12) : double.PositiveInfinity;
-        }
-
+        double[] variance = Variance(residuals);
         _residual = [.. residuals.Select(r => r.Sum())];
         Misfit = [.. residuals.Select((r, k) => MisfitOf(r, variance, Fits[k].PhaseRad.Length))];
         return (variance, steps.Max());
@@ -200,10 +155,24 @@ internal sealed class GroupPhases
         return freedom > 0 ? sum / freedom : double.NaN;
     }
 
-    private void ForEachGroup(Action<int> action, CancellationToken cancel) => Parallel.For(0, Fits.Length, Options(cancel), action);
+    // Two of a group's S numbers a pixel are taken by its field.
+    private double[] Variance(double[][] residuals)
+    {
+        var sum = new double[_sample.Count];
+        var freedom = new int[_sample.Count];
+        for (int k = 0; k < residuals.Length; k++)
+        {
+            int free = Fits[k].PhaseRad.Length - 2;
+            for (int p = 0; p < sum.Length; p++)
+            {
+                sum[p] += residuals[k][p];
+                freedom[p] += residuals[k][p] > 0 ? free : 0;
+            }
+        }
 
-    private ParallelOptions Options(CancellationToken cancel) =>
-        new() { MaxDegreeOfParallelism = _settings.Threads, CancellationToken = cancel };
+        return [.. sum.Zip(freedom, (s, n) => n > 0 ? Math.Max(s / n, 1.0 / 12) : double.PositiveInfinity)];
+    }
 
-    private static double Square(Complex z) => (z.Real * z.Real) + (z.Imaginary * z.Imaginary);
+    private void ForEachGroup(Action<int> action, CancellationToken cancel) => Parallel.For(
+        0, Fits.Length, new ParallelOptions { MaxDegreeOfParallelism = _settings.Threads, CancellationToken = cancel }, action);
 }

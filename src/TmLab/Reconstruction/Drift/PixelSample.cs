@@ -1,10 +1,11 @@
+using System.Numerics;
 using TmLab.Measurement;
 
 namespace TmLab.Reconstruction.Drift;
 
 /// <summary>
 /// The counts of all frames at some pixels, dark level taken off: enough to find every frame's phase, as that is common to all
-/// pixels. Counts at full scale say nothing and stand as NaN.
+/// pixels. Counts at full scale say nothing and stand as NaN; so does what fills the last register.
 /// </summary>
 internal sealed class PixelSample
 {
@@ -12,24 +13,22 @@ internal sealed class PixelSample
 
     // Fewer pixels for very long measurements, so that the sample stays below 128 MiB. Not a matter of the memory budget: the result
     // must not depend on it.
-    private const int MostCounts = 1 << 25;
+    private const int MostCounts = 1 << 24;
 
-    private readonly float[] _counts;
+    private readonly double[] _counts;
 
-    private PixelSample(int frames, int[] pixels)
+    private PixelSample(int frames, int pixels)
     {
-        Pixels = pixels;
-        _counts = new float[(long)frames * pixels.Length];
+        Count = (pixels + Vector<double>.Count - 1) / Vector<double>.Count * Vector<double>.Count;
+        _counts = new double[(long)frames * Count];
+        _counts.AsSpan().Fill(double.NaN);
     }
 
-    /// <summary>The pixels' numbers in the frame.</summary>
-    public int[] Pixels { get; }
-
-    /// <summary>Number of pixels.</summary>
-    public int Count => Pixels.Length;
+    /// <summary>Number of pixels, rounded up to fill registers.</summary>
+    public int Count { get; }
 
     /// <summary>One frame's counts at the pixels.</summary>
-    public ReadOnlySpan<float> Frame(int frame) => _counts.AsSpan(frame * Count, Count);
+    public ReadOnlySpan<double> Frame(int frame) => _counts.AsSpan(frame * Count, Count);
 
     /// <summary>Reads runs of neighbouring pixels spread evenly over the frame; all pixels of a small one.</summary>
     /// <param name="reader">The counts.</param>
@@ -39,7 +38,7 @@ internal sealed class PixelSample
     {
         int wanted = Math.Clamp(MostCounts / reader.FrameCount, 1, settings.DriftPixels);
         (int First, int Count)[] runs = Runs(facts.PixelCount, wanted);
-        var sample = new PixelSample(reader.FrameCount, [.. runs.SelectMany(r => Enumerable.Range(r.First, r.Count))]);
+        var sample = new PixelSample(reader.FrameCount, runs.Sum(r => r.Count));
         int place = 0;
         foreach ((int first, int count) in runs)
         {
@@ -71,7 +70,7 @@ internal sealed class PixelSample
             for (int p = 0; p < count; p++)
             {
                 ushort raw = counts[(f * count) + p];
-                _counts[(f * Count) + place + p] = raw >= fullScale ? float.NaN : raw - facts.DarkCounts[first + p];
+                _counts[(f * Count) + place + p] = raw >= fullScale ? double.NaN : raw - facts.DarkCounts[first + p];
             }
         }
     }

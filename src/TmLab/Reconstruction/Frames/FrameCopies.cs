@@ -25,17 +25,17 @@ internal static class FrameCopies
         return a.IsStepped && b.IsStepped && !sameDue && AreEqual(sample.Frame(place - 1), sample.Frame(place));
     }
 
-    private static bool AreEqual(ReadOnlySpan<float> a, ReadOnlySpan<float> b)
+    private static bool AreEqual(ReadOnlySpan<double> a, ReadOnlySpan<double> b)
     {
         int equal = 0;
         for (int p = 0; p < a.Length; p++)
         {
-            if (a[p] != b[p] && !(float.IsNaN(a[p]) && float.IsNaN(b[p])))
+            if (a[p] != b[p] && !(double.IsNaN(a[p]) && double.IsNaN(b[p])))
             {
                 return false;
             }
 
-            equal += float.IsNaN(a[p]) ? 0 : 1;
+            equal += double.IsNaN(a[p]) ? 0 : 1;
         }
 
         return equal >= FewestPixels;

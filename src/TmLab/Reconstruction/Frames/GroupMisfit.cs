@@ -149,7 +149,7 @@ internal sealed class GroupMisfit
     private bool LearnPixel(int p, double[] background, double[] modulation)
     {
         _modulation[p] = modulation.Where(q => !double.IsNaN(q)).DefaultIfEmpty(0).Average();
-        if (_modulation[p] > 0 && CoherenceModel.TryFit(background, modulation, out _alpha[p], out _beta[p]))
+        if (_modulation[p] > 0 && TryRelate(background, modulation, out _alpha[p], out _beta[p]))
         {
             return true;
         }
@@ -158,6 +158,17 @@ internal sealed class GroupMisfit
         double[] known = [.. background.Where(a => !double.IsNaN(a))];
         (_alpha[p], _beta[p]) = known.Length > 0 && _modulation[p] > 0 ? (known.Average(), 0) : (double.NaN, 0);
         return !double.IsNaN(_alpha[p]);
+    }
+
+    // Least squares of a = α + β q, as in the coherence model; false where that makes no sense.
+    private static bool TryRelate(double[] background, double[] modulation, out double alpha, out double beta)
+    {
+        int[] known = [.. Enumerable.Range(0, background.Length).Where(k => !double.IsNaN(background[k]))];
+        double a = known.Select(k => background[k]).DefaultIfEmpty(0).Average(), q = known.Select(k => modulation[k]).DefaultIfEmpty(0).Average();
+        double spread = known.Sum(k => (modulation[k] - q) * (modulation[k] - q));
+        beta = known.Sum(k => (modulation[k] - q) * (background[k] - a)) / spread;
+        alpha = a - (beta * q);
+        return known.Length >= CoherenceModel.FewestGroups && spread > 0 && beta > 0 && alpha > 0;
     }
 
     private (double Background, Complex Field, double Residual) FitPixel(StepFit fit, int[] frames, FramePlaces places, int p)

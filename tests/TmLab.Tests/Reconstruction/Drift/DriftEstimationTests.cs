@@ -24,7 +24,7 @@ public sealed class DriftEstimationTests
     [MemberData(nameof(Cases))]
     public void Without_noise_the_phases_inside_every_mode_come_out_whatever_the_drift(int steps, SteppedArm arm)
     {
-        Schedule schedule = Trackers(32, steps, every: 8);
+        Schedule schedule = TrackedSchedule.Make(32, steps, every: 8);
         double[] walk = Walk(schedule, 0.05, seed: 1);
         double[] errors = [0, 0.1, -0.15, 0.2, 0.05];
         ExactBench bench = Bench(schedule, walk, errors, arm);
@@ -41,7 +41,7 @@ public sealed class DriftEstimationTests
     [Fact]
     public void The_stated_uncertainty_covers_the_path_and_the_step_errors_are_found()
     {
-        Schedule schedule = Trackers(64, 4, every: 8);
+        Schedule schedule = TrackedSchedule.Make(64, 4, every: 8);
         double[] walk = Walk(schedule, 0.05, seed: 2);
         double[] errors = [0, 0.1, -0.15, 0.2];
         ExactBench bench = Bench(schedule, walk, errors, SteppedArm.Signal);
@@ -73,7 +73,7 @@ public sealed class DriftEstimationTests
     [Fact]
     public void Power_that_wanders_is_found()
     {
-        Schedule schedule = Trackers(32, 4, every: 8);
+        Schedule schedule = TrackedSchedule.Make(32, 4, every: 8);
         var power = new Random(4);
         double[] gains = [.. schedule.Frames.Select(_ => 1 + (0.03 * ((2 * power.NextDouble()) - 1)))];
         ExactBench bench = Bench(schedule, Walk(schedule, 0.05, seed: 5), [0, 0, 0, 0], SteppedArm.Signal);
@@ -91,7 +91,7 @@ public sealed class DriftEstimationTests
     [Fact]
     public void Too_few_modes_for_the_model_fall_back_to_what_the_trackers_say()
     {
-        Schedule schedule = Trackers(4, 4, every: 4);
+        Schedule schedule = TrackedSchedule.Make(4, 4, every: 4);
         ExactBench bench = Bench(schedule, new double[schedule.Frames.Length], [0, 0, 0, 0], SteppedArm.Signal, modes: 4);
         DriftFacts drift = DriftEstimation.Run(bench.Reader, bench.Facts, new ReconstructionSettings(), TestContext.Current.CancellationToken);
         Assert.Equal(DriftMethod.TrackersInterpolated, drift.Method);
@@ -120,30 +120,5 @@ public sealed class DriftEstimationTests
         var random = new Random(seed);
         double phase = 0;
         return [.. schedule.Frames.Select(_ => phase += sdPerFrame * Math.Sqrt(-2 * Math.Log(1 - random.NextDouble())) * Math.Cos(2 * Math.PI * random.NextDouble()))];
-    }
-
-    private static Schedule Trackers(int modes, int steps, int every)
-    {
-        var frames = new List<ScheduledFrame>();
-        void Show(FrameRole role, int mode)
-        {
-            for (int s = 0; s < steps; s++)
-            {
-                frames.Add(new ScheduledFrame(frames.Count, role, mode, s, 2 * Math.PI * s / steps, frames.Count));
-            }
-        }
-
-        for (int mode = 0; mode < modes; mode++)
-        {
-            if (mode % every == 0)
-            {
-                Show(FrameRole.Tracker, 0);
-            }
-
-            Show(FrameRole.Mode, mode);
-        }
-
-        Show(FrameRole.Tracker, 0);
-        return new Schedule([.. frames], true);
     }
 }

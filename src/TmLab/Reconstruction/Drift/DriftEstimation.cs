@@ -7,6 +7,8 @@ namespace TmLab.Reconstruction.Drift;
 /// <summary>Chooses how the drift is followed and follows it.</summary>
 public static class DriftEstimation
 {
+    private const double SmallestRateShare = 0.01;
+
     /// <summary>
     /// The way asked for, or the next simpler one that the measurement allows: the smoothed path wants eight groups and usable pixels,
     /// interpolation two trackers.
@@ -43,7 +45,8 @@ public static class DriftEstimation
 
         ImmutableArray<TrackerPin> pins = TrackerPins.Find(facts.Schedule, phases, commanded);
         var solver = new DriftPathSolver(facts.Schedule, phases, commanded, pins);
-        DriftPath path = solver.Solve(solver.EstimateWalkRate());
+        double rate = solver.EstimateWalkRate(), inside = solver.WalkRateInsideGroups();
+        DriftPath path = solver.Solve(rate);
         var drift = new DriftFacts(
             DriftMethod.SmoothedPath,
             [.. pins.Select(p => p.TimeS)],
@@ -56,8 +59,15 @@ public static class DriftEstimation
             path.WalkRateRad2PerS)
         {
             Decorrelation = Decorrelation.Fit(phases, pins),
-            AmbiguousGaps = AmbiguousGaps.Find(facts.Schedule, phases, commanded, pins, solver.WalkRateInsideGroups()),
+            AmbiguousGaps = AmbiguousGaps.Find(facts.Schedule, phases, commanded, pins, inside),
         };
+        if (rate > inside)
+        {
+            // Drift that is slow but large makes the trackers move more than the groups let expect. The path is safest with the larger rate;
+            // what is left between the groups is nearer to the geometric mean of both.
+            solver.Solve(Math.Sqrt(rate * Math.Max(inside, SmallestRateShare * rate)));
+        }
+
         return new DriftEstimate(drift, phases, solver);
     }
 }

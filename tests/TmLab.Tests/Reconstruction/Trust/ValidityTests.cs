@@ -2,7 +2,9 @@ using System.Collections.Immutable;
 using TmLab.Matrix;
 using TmLab.Measurement;
 using TmLab.Quantities;
+using TmLab.Reconstruction;
 using TmLab.Simulation;
+using TmLab.TestKit;
 using Xunit;
 
 namespace TmLab.Tests.Reconstruction.Trust;
@@ -15,11 +17,12 @@ public sealed class ValidityTests
     [Fact]
     public void A_saturated_region_of_two_per_cent_is_flagged_whatever_the_seed()
     {
+        var camera = new SimulatedCamera { ElectronsPerCount = 7 };
         for (int seed = 1; seed <= Seeds; seed++)
         {
             // 5 of 256 pixels.
             var region = new PixelRectangle(seed % 11, seed % 15, 5, 1);
-            TrialBench bench = TrialBench.Run(new BenchSettings { Seed = (ulong)seed, Stray = new StrayLight(region, 1e7) }, WithFewBits(), Manifest());
+            TrialBench bench = TrialBench.Run(new BenchSettings { Seed = (ulong)seed, Stray = new StrayLight(region, 1e7), Camera = camera }, ScheduleBuilder.Build(Plan), Manifest());
             int[] saturated = [.. Enumerable.Range(0, 256).Where(p => bench.Facts.Pixels.Reason[p] == PixelReason.Saturated)];
             Assert.Equal([.. Enumerable.Range(0, 5).Select(i => (region.Y * 16) + region.X + i)], saturated);
             Assert.Contains("5 pixels are saturated: marked invalid.", bench.Facts.Quality.Warnings);
@@ -75,16 +78,31 @@ public sealed class ValidityTests
     [Fact]
     public void Light_that_the_modulator_does_not_modulate_shows_as_an_outlying_column()
     {
-        TrialBench clean = TrialBench.Run(new BenchSettings(), Plan, 16, 4);
-        Assert.Empty(clean.Facts.Quality.OutlyingModes);
+        var modes = new ModeDescription(BasisKind.Hadamard, HadamardOrdering.Natural, 16, new GridShape(4, 4), null, null);
+        var bench = new ExactBench(modes, Schedule.ModeMajor(16, 4), new ImageSize(16, 16), 3);
+        Assert.Empty(Reconstruct(bench).Quality.OutlyingModes);
+        // A fringe of the same amplitude under every pattern: 5,000 counts in column 0, where the others have √(8000 · 1500/16) = 870.
+        for (int f = 0; f < bench.Frames.Length; f++)
+        {
+            ushort more = (ushort)Math.Round(10_000 * (1 + Math.Cos(bench.Facts.Schedule.Frames[f].PhaseRad)));
+            for (int p = 0; p < bench.Frames[f].Length; p++)
+            {
+                bench.Frames[f][p] += more;
+            }
+        }
+
+        TransmissionMatrixFacts facts = Reconstruct(bench);
+        Assert.Equal([0], facts.Quality.OutlyingModes);
+        Assert.Contains(facts.Quality.Warnings, w => w.Contains("does not modulate", StringComparison.Ordinal));
     }
 
-    private static Schedule WithFewBits() => ScheduleBuilder.Build(Plan);
+    private static TransmissionMatrixFacts Reconstruct(ExactBench bench) => MatrixReconstruction.Run(
+        bench.Reader, bench.Facts, new ReconstructionSettings(), new InMemoryMatrix(256, 16), null, TestContext.Current.CancellationToken);
 
     private static MeasurementManifest Manifest(int gridSide = 4, int side = 16)
     {
         MeasurementManifest manifest = TrialBench.Manifest(side, gridSide, BasisKind.Hadamard, new SimulatedCamera());
-        // Full well 30,000 electrons at 7.5 a count and an offset of 64 stays above the 4,095 of 12 bits only when full.
+        // A full well of 30,000 electrons at 7 a count is beyond the 4,095 counts of 12 bits.
         return side == 16 ? manifest with { Camera = manifest.Camera with { BitDepth = 12 } } : manifest;
     }
 

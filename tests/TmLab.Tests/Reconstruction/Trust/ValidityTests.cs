@@ -92,12 +92,12 @@ public sealed class ValidityTests
         }
 
         TransmissionMatrixFacts facts = Reconstruct(bench);
-        Assert.Equal([0], facts.Quality.OutlyingModes);
+        Assert.True(facts.Quality.OutlyingModes.SequenceEqual([0]), string.Join(";", facts.Quality.Warnings) + facts.Quality.SignalToNoise + " " + facts.Quality.MeanVisibility + " " + facts.Quality.LostPatterns.Length);
         Assert.Contains(facts.Quality.Warnings, w => w.Contains("does not modulate", StringComparison.Ordinal));
     }
 
     private static TransmissionMatrixFacts Reconstruct(ExactBench bench) => MatrixReconstruction.Run(
-        bench.Reader, bench.Facts, new ReconstructionSettings(), new InMemoryMatrix(256, 16), null, TestContext.Current.CancellationToken);
+        new InMemoryFrames(bench.Frames, new ImageSize(16, 16)), bench.Facts, new ReconstructionSettings(), new InMemoryMatrix(256, 16), null, TestContext.Current.CancellationToken);
 
     private static MeasurementManifest Manifest(int gridSide = 4, int side = 16)
     {

@@ -65,6 +65,7 @@ internal static class CommandLine
             new SimulateCommand(stages, runner),
             new IngestCommand(stages, runner),
             new ReconstructCommand(stages, runner),
+            new CheckCommand(stages, runner),
             new ChannelsCommand(stages, runner),
             new MaskCommand(stages, runner),
             new RunCommand(stages, runner),

@@ -131,7 +131,7 @@ public sealed class PlanAndSimulateTests
         writer.WriteRows(0, rows);
         writer.Complete(facts with
         {
-            Modes = facts.Modes with { PatternValid = [.. Enumerable.Range(0, matrix.ColumnCount).Select(k => k != pattern)] },
+            Quality = facts.Quality with { LostPatterns = [pattern] },
         });
     }
 

@@ -25,5 +25,7 @@ internal interface IStages
 
     ShowReport Describe(ShowRequest request, StageContext context);
 
+    CheckReport Check(CheckRequest request, StageContext context);
+
     AboutReport DescribeProgram();
 }

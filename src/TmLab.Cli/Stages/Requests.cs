@@ -30,3 +30,6 @@ internal sealed record ShowRequest(string Input);
 
 /// <summary>All stages in one; without targets the valid pixel nearest to the centre of the camera region is taken.</summary>
 internal sealed record RunRequest(string Folder, string OutputFolder, ImmutableArray<CameraPixel> Targets);
+
+/// <summary>A stage file to be judged: whether its checksums are compared, and what is required of a matrix.</summary>
+internal sealed record CheckRequest(string Input, bool Verify, ImmutableArray<Requirement> Requirements);

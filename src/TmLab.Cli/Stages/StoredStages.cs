@@ -115,6 +115,25 @@ internal sealed class StoredStages : IStages
 
     public ShowReport Describe(ShowRequest request, StageContext context) => StageDescription.Of(request.Input);
 
+    public CheckReport Check(CheckRequest request, StageContext context)
+    {
+        ImmutableArray<string>? verified = request.Verify ? StageFile.Verify(request.Input, context.Progress, context.Cancellation) : null;
+        StageFormat format = StageFile.Describe(request.Input).Format;
+        if (format != StageFormat.Matrix && (!request.Verify || !request.Requirements.IsEmpty))
+        {
+            throw new BadInputException(
+                request.Input, null, $"holds a {format.Contents}; only a matrix is judged", "give the file that 'reconstruct' wrote, or --verify alone");
+        }
+
+        if (format != StageFormat.Matrix)
+        {
+            return CheckReport.OfChecksums(request.Input, format.Contents, verified);
+        }
+
+        using var matrix = new MatrixFileReader(request.Input);
+        return CheckReport.Of(request, matrix.Facts, verified);
+    }
+
     public AboutReport DescribeProgram() => AboutReport.Collect(
     [
         .. new[] { EngineChoice.Native, EngineChoice.Managed }.Select(choice =>

@@ -44,6 +44,17 @@ public sealed class BandedCholesky
         return x;
     }
 
+    /// <summary>
+    /// x = L⁻ᵀ z: for independent standard normal z a draw from the normal distribution of covariance A⁻¹.
+    /// </summary>
+    public double[] Colour(ReadOnlySpan<double> white)
+    {
+        Preconditions.SameLength(white.Length, Size);
+        double[] y = white.ToArray();
+        Backward(y);
+        return [.. _place.Select(p => y[p])];
+    }
+
     /// <summary>The diagonal of A⁻¹.</summary>
     public double[] InverseDiagonal()
     {

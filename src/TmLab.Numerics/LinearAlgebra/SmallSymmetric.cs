@@ -24,6 +24,11 @@ public static class SmallSymmetric
         return (all.SubMatrix(0, kept, 0, kept) - (cross * gain)).ToArray();
     }
 
+    /// <summary>x = L⁻ᵀ z with A = L Lᵀ: for independent standard normal z a draw from the normal distribution of covariance A⁻¹.</summary>
+    /// <exception cref="ArgumentException">A is not positive definite.</exception>
+    public static double[] Colour(double[,] a, double[] white) =>
+        Matrix<double>.Build.DenseOfArray(a).Cholesky().Factor.Transpose().Solve(Vector<double>.Build.Dense(white)).ToArray();
+
     /// <summary>The inverse of a positive-definite A.</summary>
     /// <exception cref="ArgumentException">A is not positive definite.</exception>
     public static double[,] Inverse(double[,] a)

@@ -1,6 +1,5 @@
 using System.Collections.Immutable;
 using TmLab.Failures;
-using TmLab.Matrix;
 using TmLab.Measurement;
 using TmLab.Planning;
 using TmLab.Storage.StageFiles;
@@ -23,7 +22,7 @@ public static class RepairSource
         string parent = measurementFile ?? FindParent(matrixFile, matrix);
         using var measurement = new MeasurementFileReader(parent);
         MeasurementFacts facts = measurement.Facts;
-        ImmutableArray<int> lost = Lost(matrix.Facts.Modes, facts.Manifest.Modes, matrixFile);
+        ImmutableArray<int> lost = Lost(matrix.Facts.Quality.LostPatterns, facts.Manifest.Modes, matrixFile);
         return WithBench(facts, parent, expected) with { RepairPatterns = lost };
     }
 
@@ -37,21 +36,21 @@ public static class RepairSource
                 matrixFile, "parent_file", $"the measurement file \"{name}\" that the matrix was made from is not found", "name it with --measurement");
     }
 
-    private static ImmutableArray<int> Lost(ModeFacts facts, ModeDescription modes, string file)
+    private static ImmutableArray<int> Lost(ImmutableArray<int> lost, ModeDescription modes, string file)
     {
-        ImmutableArray<bool> valid = !facts.PatternValid.IsEmpty ? facts.PatternValid
-            : modes.Basis == BasisKind.Pixel ? facts.Valid
-            : [];
-        if (!valid.IsEmpty && valid.Length != modes.PatternCount)
+        if (lost.IsEmpty)
         {
             throw new BadInputException(
-                file, "/modes", $"the matrix tells of {valid.Length} patterns, the measurement has {modes.PatternCount}", "name the measurement that it was made from");
+                file, "/quality/lost_patterns", "no pattern was lost, so there is nothing to repair", "use the matrix as it is");
         }
 
-        ImmutableArray<int> lost = [.. Enumerable.Range(0, valid.Length).Where(k => !valid[k])];
-        return lost.IsEmpty
-            ? throw new BadInputException(file, "/modes", "no pattern was lost, so there is nothing to repair", "use the matrix as it is")
-            : lost;
+        return lost.Max() < modes.PatternCount
+            ? lost
+            : throw new BadInputException(
+                file,
+                "/quality/lost_patterns",
+                $"pattern {lost.Max()} was lost, the measurement has {modes.PatternCount}",
+                "name the measurement that it was made from");
     }
 
     private static PlanSettings WithBench(MeasurementFacts facts, string file, PlanSettings expected)

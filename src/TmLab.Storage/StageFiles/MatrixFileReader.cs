@@ -3,6 +3,7 @@ using TmLab.Failures;
 using TmLab.Matrix;
 using TmLab.Numerics.Matrices;
 using TmLab.Quantities;
+using TmLab.Storage.Hdf5;
 
 namespace TmLab.Storage.StageFiles;
 
@@ -13,7 +14,6 @@ namespace TmLab.Storage.StageFiles;
 public sealed class MatrixFileReader : IRowBlockReader, IDisposable
 {
     internal const string Matrix = "/matrix";
-    internal const string PatternValid = "/modes/pattern_valid";
 
     private readonly StageFileReader _file;
     private readonly StoredRows _rows;
@@ -82,11 +82,11 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
             [.. _file.ReadArray<int>("/pixels/x", RowCount)],
             Flags("/pixels/valid", RowCount),
             [.. _file.ReadArray<float>("/pixels/visibility", RowCount)],
-            [.. _file.ReadArray<float>("/pixels/noise_rms", RowCount)]),
-        new ModeFacts(Flags("/modes/valid", ColumnCount), [.. _file.ReadArray<float>("/modes/noise_rms", ColumnCount)])
+            [.. _file.ReadArray<float>("/pixels/noise_rms", RowCount)])
         {
-            PatternValid = _file.Has(PatternValid) ? Flags(PatternValid, -1) : [],
+            Reason = ReadReasons(),
         },
+        new ModeFacts(Flags("/modes/valid", ColumnCount), [.. _file.ReadArray<float>("/modes/noise_rms", ColumnCount)]),
         ReadDrift(),
         ReadQuality());
 
@@ -103,7 +103,34 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
             [.. _file.ReadArray<double>("/drift/frame_phase_sd_rad", -1)],
             [.. _file.ReadArray<double>("/drift/step_error_rad", -1)],
             [.. _file.ReadArray<double>("/drift/frame_gain", -1)],
-            _file.Attribute<double>("/drift", "walk_rate_rad2_per_s"));
+            _file.Attribute<double>("/drift", "walk_rate_rad2_per_s"))
+        {
+            AmbiguousGaps = Optional("/drift/ambiguous_gaps"),
+            Decorrelation = new DecorrelationFacts(
+                _file.Has("/drift/tracker_overlap_without_noise") ? [.. _file.ReadArray<double>("/drift/tracker_overlap_without_noise", -1)] : [],
+                Number("/drift", "decorrelation_time_s"),
+                Number("/drift", "decorrelation_time_sd_s"),
+                Number("/drift", "decorrelation_enhancement_factor")),
+        };
+    }
+
+    // Files of before these were known lack them.
+    private ImmutableArray<int> Optional(string path) => _file.Has(path) ? [.. _file.ReadArray<int>(path, -1)] : [];
+
+    private double Number(string path, string name) => _file.TryNumber<double>(path, name) ?? double.NaN;
+
+    private ImmutableArray<PixelReason> ReadReasons()
+    {
+        const string path = "/pixels/reason";
+        if (!_file.Has(path))
+        {
+            return [];
+        }
+
+        byte[] reasons = _file.ReadArray<byte>(path, RowCount);
+        return reasons.All(r => Enum.IsDefined((PixelReason)r))
+            ? [.. reasons.Select(r => (PixelReason)r)]
+            : throw DamagedFiles.Damaged(_file.Path, path, "has a reason that is not known");
     }
 
     private MatrixQuality ReadQuality()
@@ -115,7 +142,20 @@ public sealed class MatrixFileReader : IRowBlockReader, IDisposable
             _file.Attribute<int>(group, "valid_pixels"),
             _file.Attribute<int>(group, "valid_modes"),
             _file.Attribute<int>(group, "rows_normalised") != 0,
-            _file.Lines(group, "warnings"));
+            _file.Lines(group, "warnings"))
+        {
+            Frames = FrameFindingGroup.Read(_file),
+            LostPatterns = Optional(group + "/lost_patterns"),
+            OutlyingModes = Optional(group + "/outlying_modes"),
+            Budget = new ErrorBudget(
+                Number(group, "loss_noise"),
+                Number(group, "loss_drift"),
+                Number(group, "loss_decorrelation"),
+                Number(group, "loss_steps"),
+                Number(group, "loss_saturation"),
+                Number(group, "loss_excluded"),
+                Number(group, "predicted_fidelity")),
+        };
     }
 
     private ImmutableArray<bool> Flags(string path, int count) => [.. _file.ReadArray<byte>(path, count).Select(f => f != 0)];

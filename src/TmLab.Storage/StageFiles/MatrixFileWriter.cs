@@ -68,6 +68,12 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         _file.Add("/pixels/valid", Flags(pixels.Valid), "1");
         _file.Add("/pixels/visibility", pixels.Visibility.ToArray(), "1");
         _file.Add("/pixels/noise_rms", pixels.NoiseRms.ToArray(), "sqrt(count)");
+        if (!pixels.Reason.IsEmpty)
+        {
+            Preconditions.SameLength(pixels.Reason.Length, _rowCount);
+            _file.Add("/pixels/reason", pixels.Reason.Select(r => (byte)r).ToArray(), "1");
+            _file.AddAttribute("/pixels/reason", "meaning", string.Join(", ", Enum.GetValues<PixelReason>().Select(r => $"{(int)r} {StoredNames.Of(r)}")));
+        }
     }
 
     private void WriteModes(ModeFacts modes)
@@ -76,10 +82,6 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         Preconditions.SameLength(modes.NoiseRms.Length, _columnCount);
         _file.Add("/modes/valid", Flags(modes.Valid), "1");
         _file.Add("/modes/noise_rms", modes.NoiseRms.ToArray(), "sqrt(count)");
-        if (!modes.PatternValid.IsEmpty)
-        {
-            _file.Add(MatrixFileReader.PatternValid, Flags(modes.PatternValid), "1");
-        }
     }
 
     private void WriteDrift(DriftFacts drift)
@@ -93,6 +95,12 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         _file.Add("/drift/step_error_rad", drift.StepErrorRad.ToArray(), "rad");
         _file.Add("/drift/frame_gain", drift.FrameGain.ToArray(), "1");
         _file.AddAttribute("/drift", "walk_rate_rad2_per_s", drift.WalkRateRad2PerS);
+        _file.Add("/drift/ambiguous_gaps", drift.AmbiguousGaps.ToArray(), "1");
+        DecorrelationFacts change = drift.Decorrelation;
+        _file.Add("/drift/tracker_overlap_without_noise", change.Overlap.ToArray(), "1");
+        _file.AddAttribute("/drift", "decorrelation_time_s", change.TimeConstantS);
+        _file.AddAttribute("/drift", "decorrelation_time_sd_s", change.TimeConstantSdS);
+        _file.AddAttribute("/drift", "decorrelation_enhancement_factor", change.EnhancementFactor);
     }
 
     private void WriteQuality(MatrixQuality quality)
@@ -104,6 +112,21 @@ public sealed class MatrixFileWriter : IRowBlockWriter, IDisposable
         _file.AddAttribute(group, "valid_modes", quality.ValidModes);
         _file.AddAttribute(group, "rows_normalised", quality.RowsNormalised ? 1 : 0);
         _file.AddLines(group, "warnings", quality.Warnings);
+        _file.Add(group + "/lost_patterns", quality.LostPatterns.ToArray(), "1");
+        _file.Add(group + "/outlying_modes", quality.OutlyingModes.ToArray(), "1");
+        FrameFindingGroup.Write(_file, quality.Frames);
+        WriteBudget(group, quality.Budget);
+    }
+
+    private void WriteBudget(string group, ErrorBudget budget)
+    {
+        _file.AddAttribute(group, "predicted_fidelity", budget.Fidelity);
+        _file.AddAttribute(group, "loss_noise", budget.Noise);
+        _file.AddAttribute(group, "loss_drift", budget.Drift);
+        _file.AddAttribute(group, "loss_decorrelation", budget.Decorrelation);
+        _file.AddAttribute(group, "loss_steps", budget.Steps);
+        _file.AddAttribute(group, "loss_saturation", budget.Saturation);
+        _file.AddAttribute(group, "loss_excluded", budget.Excluded);
     }
 
     private static byte[] Flags(IEnumerable<bool> flags) => [.. flags.Select(f => f ? (byte)1 : (byte)0)];

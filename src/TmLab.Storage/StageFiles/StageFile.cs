@@ -1,4 +1,6 @@
+using System.Collections.Immutable;
 using TmLab.Failures;
+using TmLab.Quantities;
 
 namespace TmLab.Storage.StageFiles;
 
@@ -11,5 +13,22 @@ public static class StageFile
     {
         using var reader = StageFileReader.Open(path, null);
         return reader.Describe();
+    }
+
+    /// <summary>Compares everything that has checksums with them: the headers when the file is opened, the large datasets block by block.</summary>
+    /// <returns>The large datasets that were compared.</returns>
+    /// <exception cref="BadInputException">Something differs.</exception>
+    /// <exception cref="OperationCanceledException">It was stopped.</exception>
+    public static ImmutableArray<string> Verify(string path, IProgress<StageProgress>? progress = null, CancellationToken cancel = default)
+    {
+        using var reader = StageFileReader.Open(path, null);
+        ImmutableArray<string> datasets =
+        [
+            .. reader.Describe().Datasets.Select(d => d.Path)
+                .Where(p => p.StartsWith(StageFileWriter.ChecksumGroup + "/", StringComparison.Ordinal))
+                .Select(p => p[StageFileWriter.ChecksumGroup.Length..]),
+        ];
+        reader.Verify(datasets, progress, cancel);
+        return datasets;
     }
 }

@@ -43,19 +43,16 @@ public sealed record PixelFacts(
     ImmutableArray<int> X,
     ImmutableArray<bool> Valid,
     ImmutableArray<float> Visibility,
-    ImmutableArray<float> NoiseRms);
+    ImmutableArray<float> NoiseRms)
+{
+    /// <summary>Why a row may not be used, one entry a pixel; empty where it is not known.</summary>
+    public ImmutableArray<PixelReason> Reason { get; init; } = [];
+}
 
 /// <summary>Facts on the columns, arrays of one entry a macro-pixel.</summary>
 /// <param name="Valid">Whether the column may be used.</param>
 /// <param name="NoiseRms">R.m.s. noise of one element of the column, in the matrix' unit; NaN where it cannot be known.</param>
-public sealed record ModeFacts(ImmutableArray<bool> Valid, ImmutableArray<float> NoiseRms)
-{
-    /// <summary>
-    /// Whether each pattern k (not macro-pixel) was measured soundly; those that were not are what a repair measures again. Empty
-    /// where all were. In bases other than single macro-pixels a lost pattern is missing from every column.
-    /// </summary>
-    public ImmutableArray<bool> PatternValid { get; init; } = [];
-}
+public sealed record ModeFacts(ImmutableArray<bool> Valid, ImmutableArray<float> NoiseRms);
 
 /// <summary>How the drift was followed.</summary>
 public enum DriftMethod
@@ -104,6 +101,14 @@ public sealed record DriftFacts(
         [.. Enumerable.Repeat(1.0, frames)],
         double.NaN);
 
+    /// <summary>The change of the sample, from the trackers' overlap.</summary>
+    public DecorrelationFacts Decorrelation { get; init; } = DecorrelationFacts.Unknown;
+
+    /// <summary>
+    /// Numbers k of the gaps, from tracker k to tracker k + 1, over which the phase may have been unwrapped to a wrong multiple of 2π.
+    /// </summary>
+    public ImmutableArray<int> AmbiguousGaps { get; init; } = [];
+
     /// <summary>Largest phase change between one tracker and the next, radians; 0 with fewer than two.</summary>
     public double LargestGapRad =>
         TrackerPhaseRad.Zip(TrackerPhaseRad.Skip(1), (a, b) => Math.Abs(b - a)).DefaultIfEmpty(0).Max();
@@ -122,4 +127,17 @@ public sealed record MatrixQuality(
     int ValidPixels,
     int ValidModes,
     bool RowsNormalised,
-    ImmutableArray<string> Warnings);
+    ImmutableArray<string> Warnings)
+{
+    /// <summary>Frames that do not fit, named.</summary>
+    public ImmutableArray<FrameFinding> Frames { get; init; } = [];
+
+    /// <summary>Patterns without a usable showing, rising.</summary>
+    public ImmutableArray<int> LostPatterns { get; init; } = [];
+
+    /// <summary>Columns whose energy is far above the others', rising: light that the modulator does not modulate.</summary>
+    public ImmutableArray<int> OutlyingModes { get; init; } = [];
+
+    /// <summary>The fidelity to expect, and what it is lost to.</summary>
+    public ErrorBudget Budget { get; init; } = ErrorBudget.Unknown;
+}

@@ -15,6 +15,10 @@ public sealed class Schedule
         Groups = StepGroup.Collect(frames);
     }
 
+    /// <summary>Takes rows and the groups that may be used, where frames turned out to be wrong.</summary>
+    internal Schedule(ImmutableArray<ScheduledFrame> frames, ImmutableArray<StepGroup> groups, bool timesAreMeasured) =>
+        (Frames, Groups, TimesAreMeasured) = (frames, groups, timesAreMeasured);
+
     /// <summary>One entry a frame, in frame order.</summary>
     public ImmutableArray<ScheduledFrame> Frames { get; }
 

@@ -21,9 +21,28 @@ internal sealed class FrameWeightTable
         _scale = basis.InversionScale;
         DarkWeight = new Complex64[basis.PatternCount];
         ColumnVariance = new double[basis.PatternCount];
-        Weights = new FrameWeights(
-            [.. schedule.Groups.GroupBy(g => g.Mode).Select(showings => Pattern(basis.PlaneRow(showings.Key), showings.Key, [.. showings], totalPhaseRad))]);
+        ILookup<int, StepGroup> showings = schedule.Groups.ToLookup(g => g.Mode);
+        PatternWeights[] patterns =
+            [.. Enumerable.Range(0, basis.PatternCount).Select(k => Pattern(basis.PlaneRow(k), k, [.. showings[k]], totalPhaseRad))];
+        LostPatterns = [.. Enumerable.Range(0, patterns.Length).Where(k => patterns[k].Frames.IsEmpty)];
+        if (basis is HadamardBinaryBasis && !patterns[0].Frames.IsEmpty)
+        {
+            LostPatterns.ToList().ForEach(k => patterns[k] = HalfOfAllOn(patterns[0], basis.PlaneRow(k), k));
+        }
+
+        Weights = new FrameWeights(patterns);
     }
+
+    /// <summary>Patterns without a usable showing: nothing stands in their columns, or the best guess.</summary>
+    public ImmutableArray<int> LostPatterns { get; }
+
+    /// <summary>The share of a lost column's energy that is wrong: half where half the light of pattern 0 stands in for an on/off pattern.</summary>
+    public static double LostShare(IPatternBasis basis) => basis switch
+    {
+        HadamardBinaryBasis => 0.5,
+        PixelBasis => 0,
+        _ => 1,
+    };
 
     /// <summary>Variance of D[·, k], before the basis' scale, for unit variance of each frame's counts.</summary>
     public double[] ColumnVariance { get; }
@@ -36,6 +55,14 @@ internal sealed class FrameWeightTable
     /// the dark level drops out.
     /// </summary>
     public Complex64[] DarkWeight { get; }
+
+    // An on/off pattern is half of the all-on one plus half of a Hadamard pattern: with nothing known of the latter, half of the former.
+    private PatternWeights HalfOfAllOn(PatternWeights allOn, int row, int pattern)
+    {
+        ColumnVariance[pattern] = ColumnVariance[0] / 4;
+        DarkWeight[row] = new Complex64(DarkWeight[allOn.PlaneRow].r / 2, DarkWeight[allOn.PlaneRow].i / 2);
+        return new PatternWeights(row, allOn.Frames, [.. allOn.Weights.Select(w => new Complex64(w.r / 2, w.i / 2))]);
+    }
 
     private PatternWeights Pattern(int row, int pattern, StepGroup[] showings, ImmutableArray<double> theta)
     {

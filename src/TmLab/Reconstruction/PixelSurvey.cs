@@ -8,7 +8,8 @@ namespace TmLab.Reconstruction;
 /// <param name="Visibility">Mean modulation depth 2|D|/(a − dark).</param>
 /// <param name="CountVariance">Variance of a frame's counts about the fit, counts²; NaN where it cannot be known.</param>
 /// <param name="SaturatedShare">Share of the surveyed frames at full scale.</param>
-internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, float[] SaturatedShare)
+/// <param name="Light">Mean counts above the dark level.</param>
+internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, float[] SaturatedShare, float[] Light)
 {
     private const int ChunkPixels = 8192;
 
@@ -23,7 +24,7 @@ internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, fl
         StepGroup[] groups = Spread([.. facts.Schedule.Modes], settings.SurveyModes);
         StepFit[] fits = [.. groups.Select(g => FramePhases.Fit(g, totalPhaseRad))];
         int pixels = facts.PixelCount;
-        var survey = new PixelSurvey(new float[pixels], new float[pixels], new float[pixels]);
+        var survey = new PixelSurvey(new float[pixels], new float[pixels], new float[pixels], new float[pixels]);
         var options = new ParallelOptions { MaxDegreeOfParallelism = settings.Threads, CancellationToken = cancel };
         Parallel.For(0, (pixels + ChunkPixels - 1) / ChunkPixels, options, chunk =>
         {
@@ -65,6 +66,7 @@ internal sealed record PixelSurvey(float[] Visibility, float[] CountVariance, fl
         for (int p = 0; p < count; p++)
         {
             Visibility[first + p] = totals.Visibility[p] / fits.Length;
+            Light[first + p] = totals.Level[p] / fits.Length;
             SaturatedShare[first + p] = totals.Saturated[p] / frames;
             CountVariance[first + p] = freedom > 0 ? totals.SquaredResidual[p] / freedom : ModelVariance(camera, totals.Level[p] / fits.Length);
         }

@@ -33,6 +33,8 @@ internal sealed class FakeStages(Func<Exception>? failure = null) : IStages
 
     public ShowReport Describe(ShowRequest request, StageContext context) => throw new NotSupportedException();
 
+    public CheckReport Check(CheckRequest request, StageContext context) => Answer(context, CheckReport.Of(request, SmallMatrix, null));
+
     public AboutReport DescribeProgram() => AboutReport.Collect([]);
 
     /// <summary>Two pixels by four modes, three-step (so that the noise cannot be known), with one warning.</summary>

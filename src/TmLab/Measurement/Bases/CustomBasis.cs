@@ -48,6 +48,10 @@ public sealed class CustomBasis : IPatternBasis
     public double InversionScale => 1;
 
     /// <inheritdoc/>
+    public double PatternEnergy(int pattern) => 
+        _patterns.AsSpan().Slice(pattern * ModeCount, ModeCount).ToArray().Sum(b => (b.Real * b.Real) + (b.Imaginary * b.Imaginary));
+
+    /// <inheritdoc/>
     public int PlaneRow(int pattern) => pattern;
 
     /// <inheritdoc/>

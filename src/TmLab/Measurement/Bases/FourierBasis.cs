@@ -33,6 +33,9 @@ public sealed class FourierBasis : IPatternBasis
     public double InversionScale => 1.0 / _grid.Count;
 
     /// <inheritdoc/>
+    public double PatternEnergy(int pattern) => ModeCount;
+
+    /// <inheritdoc/>
     public int PlaneRow(int pattern) => pattern;
 
     /// <inheritdoc/>

@@ -35,6 +35,9 @@ public sealed class HadamardBasis : IPatternBasis
     public double InversionScale => 1.0 / ModeCount;
 
     /// <inheritdoc/>
+    public double PatternEnergy(int pattern) => ModeCount;
+
+    /// <inheritdoc/>
     public int PlaneRow(int pattern) =>
         _ordering == HadamardOrdering.Natural ? pattern : WalshHadamard.NaturalRowOfSequency(pattern, _bits);
 

@@ -27,6 +27,9 @@ public sealed class HadamardBinaryBasis : IPatternBasis
     public double InversionScale => 2.0 / ModeCount;
 
     /// <inheritdoc/>
+    public double PatternEnergy(int pattern) => pattern == 0 ? ModeCount : ModeCount / 2.0;
+
+    /// <inheritdoc/>
     public int PlaneRow(int pattern) => _signed.PlaneRow(pattern);
 
     /// <inheritdoc/>

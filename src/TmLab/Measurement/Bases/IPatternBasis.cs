@@ -18,6 +18,9 @@ public interface IPatternBasis
     /// <summary>B[pattern, mode], by the definition.</summary>
     Complex Element(int pattern, int mode);
 
+    /// <summary>Σ_n |B[pattern, n]|²: the energy of the pattern's column for a row of T of unit mean square.</summary>
+    double PatternEnergy(int pattern);
+
     /// <summary>The plane row in which pattern <paramref name="pattern"/>'s column D[·, k] must stand before <see cref="Invert"/>: a permutation of 0 … K−1.</summary>
     int PlaneRow(int pattern);
 

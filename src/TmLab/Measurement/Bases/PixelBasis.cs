@@ -19,6 +19,9 @@ public sealed class PixelBasis : IPatternBasis
     public double InversionScale => 1;
 
     /// <inheritdoc/>
+    public double PatternEnergy(int pattern) => 1;
+
+    /// <inheritdoc/>
     public int PlaneRow(int pattern) => pattern;
 
     /// <inheritdoc/>

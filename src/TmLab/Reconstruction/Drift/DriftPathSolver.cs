@@ -1,6 +1,7 @@
 using System.Collections.Immutable;
 using TmLab.Measurement;
 using TmLab.Numerics.LinearAlgebra;
+using TmLab.Numerics.Statistics;
 
 namespace TmLab.Reconstruction.Drift;
 
@@ -14,6 +15,10 @@ internal sealed class DriftPathSolver
 {
     // Systematic step errors are expected to be of this order, radians: a weak prior.
     private const double StepErrorSpreadRad = 0.5;
+    private const ulong DrawSeed = 20;
+
+    // The rate from a few tracker gaps must exceed that from all groups by so many standard deviations to be believed.
+    private const double TrackerSignificance = 3;
 
     private readonly Schedule _schedule;
     private readonly GroupPhases _phases;
@@ -22,6 +27,8 @@ internal sealed class DriftPathSolver
     private readonly int[] _frames;
     private readonly int[] _place;
     private readonly int _steps;
+    private BandedCholesky? _factor;
+    private Border? _border;
 
     public DriftPathSolver(Schedule schedule, GroupPhases phases, ImmutableArray<double> commandedRad, ImmutableArray<TrackerPin> pins)
     {
@@ -56,30 +63,47 @@ internal sealed class DriftPathSolver
         // The absolute phase means nothing: the first frame is held near zero where no tracker does.
         normal.Add(0, 0, _pins.IsEmpty ? 1e6 : 1e-6);
         BandedCholesky factor = normal.Factor();
+        (_factor, _border) = (factor, border);
         (double[] path, double[] errors) = border.Solve(factor, right, StepErrorSpreadRad);
         return new DriftPath(OverAllFrames(path), OverAllFrames([.. factor.InverseDiagonal().Select(Math.Sqrt)]), [.. errors], walkRate);
     }
 
     /// <summary>
+    /// Draws from the posterior distribution about the path just solved for: the error of every frame's phase, path and step error
+    /// together, and the error of each step alone, radians. Deterministic.
+    /// </summary>
+    public IEnumerable<(double[] FrameErrorRad, double[] StepErrorRad)> DrawErrors(int count)
+    {
+        for (int draw = 0; draw < count; draw++)
+        {
+            var random = new SeededRandom(DrawSeed, (ulong)draw);
+            double[] white = [.. Enumerable.Range(0, _frames.Length).Select(_ => random.NextNormal())];
+            (double[] path, double[] steps) = _border!.Draw(_factor!.Colour(white), random);
+            var errors = new double[_schedule.Frames.Length];
+            foreach (ScheduledFrame frame in _schedule.Frames.Where(f => f.IsStepped))
+            {
+                errors[frame.Index] = path[_place[frame.Index]] + steps[frame.Step];
+            }
+
+            yield return (errors, steps);
+        }
+    }
+
+    /// <summary>
     /// The walk's variance rate, rad²/s, from the increments from step to step inside the groups, what they have in common taken off,
-    /// and from the trackers: the larger.
+    /// or that from the trackers where it is significantly larger, the drift then being no plain walk.
     /// </summary>
     public double EstimateWalkRate()
     {
-        double[] meanIncrement = MeanIncrements(out int[] counts);
-        double moved = 0, time = 0;
-        foreach ((int from, int to, double increment, double variance) in Increments())
-        {
-            int step = _schedule.Frames[to].Step;
-            double freedom = counts[step] > 1 ? (counts[step] - 1.0) / counts[step] : 1;
-            double rest = increment - (counts[step] > 1 ? meanIncrement[step] : 0);
-            moved += (rest * rest / freedom) - variance;
-            time += _schedule.Frames[to].TimeS - _schedule.Frames[from].TimeS;
-        }
-
-        double inside = time > 0 ? moved / time : 0;
-        return Math.Max(Math.Max(inside, TrackerRate()), 1e-12);
+        double inside = WalkRateInsideGroups(), trackers = TrackerRate();
+        // Quantile of χ²_n/n (Wilson & Hilferty, Proc. Natl. Acad. Sci. 17, 684 (1931)).
+        double spread = 2.0 / (9 * Math.Max(1, _pins.Length - 1));
+        double limit = inside * Math.Pow(1 - spread + (TrackerSignificance * Math.Sqrt(spread)), 3);
+        return Math.Max(trackers > limit ? trackers : inside, 1e-12);
     }
+
+    /// <summary>The variance rate, rad²/s, that the groups alone show; not below zero.</summary>
+    public double WalkRateInsideGroups() => WalkRate.Estimate([.. Increments()]);
 
     private void AddWalk(SparseNormalEquations normal, double walkRate)
     {
@@ -130,39 +154,36 @@ internal sealed class DriftPathSolver
         return information;
     }
 
-    private double[] MeanIncrements(out int[] counts)
-    {
-        var sum = new double[_steps];
-        counts = new int[_steps];
-        foreach ((_, int to, double increment, _) in Increments())
-        {
-            sum[_schedule.Frames[to].Step] += increment;
-            counts[_schedule.Frames[to].Step]++;
-        }
-
-        int[] n = counts;
-        return [.. sum.Select((s, i) => s / Math.Max(1, n[i]))];
-    }
-
-    private IEnumerable<(int From, int To, double Increment, double Variance)> Increments()
+    private IEnumerable<GroupIncrements> Increments()
     {
         for (int k = 0; k < _phases.Groups.Length; k++)
         {
-            ImmutableArray<int> frames = _phases.Groups[k].Frames;
-            if (_phases.Fits[k].Information[0, 0] == 0)
+            if (_phases.Fits[k].Information[0, 0] > 0)
             {
-                continue;
-            }
-
-            double[,] covariance = Covariance(_phases.Fits[k].Information);
-            for (int s = 1; s < frames.Length; s++)
-            {
-                double increment = _phases.Fits[k].PhaseRad[s] - _phases.Fits[k].PhaseRad[s - 1]
-                    - (_commandedRad[frames[s]] - _commandedRad[frames[s - 1]]);
-                double variance = covariance[s, s] + covariance[s - 1, s - 1] - (2 * covariance[s, s - 1]);
-                yield return (frames[s - 1], frames[s], increment, variance);
+                yield return IncrementsOf(k);
             }
         }
+    }
+
+    private GroupIncrements IncrementsOf(int group)
+    {
+        ImmutableArray<int> frames = _phases.Groups[group].Frames;
+        double[] observed = [.. frames.Select((f, s) => _phases.Fits[group].PhaseRad[s] - _commandedRad[f])];
+        double[,] absolute = Covariance(_phases.Fits[group].Information);
+        int n = frames.Length - 1;
+        var covariance = new double[n, n];
+        for (int i = 0; i < n; i++)
+        {
+            for (int j = 0; j < n; j++)
+            {
+                covariance[i, j] = absolute[i + 1, j + 1] - absolute[i + 1, j] - absolute[i, j + 1] + absolute[i, j];
+            }
+        }
+
+        return new GroupIncrements(
+            [.. Enumerable.Range(1, n).Select(s => observed[s] - observed[s - 1])],
+            covariance,
+            [.. Enumerable.Range(1, n).Select(s => _schedule.Frames[frames[s]].TimeS - _schedule.Frames[frames[s - 1]].TimeS)]);
     }
 
     // The common constant is not determined; holding it leaves the variance of differences as it is.
@@ -208,6 +229,8 @@ internal sealed class DriftPathSolver
         private readonly double[][] _columns = [.. Enumerable.Range(0, steps).Select(_ => new double[frames])];
         private readonly double[,] _corner = new double[steps, steps];
         private readonly double[] _right = new double[steps];
+        private double[][] _solved = [];
+        private double[,] _information = new double[0, 0];
 
         public void Add(int row, int stepOfRow, int stepOfColumn, double value, double observed)
         {
@@ -233,16 +256,30 @@ internal sealed class DriftPathSolver
                 }
             }
 
+            (_solved, _information) = (solved, corner);
             double[] errors = [0, .. SmallSymmetric.Solve(corner, rest)];
+            Subtract(errors, free);
+            return (free, errors);
+        }
+
+        /// <summary>Adds the step errors' uncertainty to a draw of the path for known step errors.</summary>
+        public (double[] Path, double[] StepErrors) Draw(double[] path, SeededRandom random)
+        {
+            double[] white = [.. Enumerable.Range(1, steps - 1).Select(_ => random.NextNormal())];
+            double[] errors = [0, .. SmallSymmetric.Colour(_information, white)];
+            Subtract(errors, path);
+            return (path, errors);
+        }
+
+        private void Subtract(double[] errors, double[] path)
+        {
             for (int s = 1; s < steps; s++)
             {
-                for (int i = 0; i < free.Length; i++)
+                for (int i = 0; i < path.Length; i++)
                 {
-                    free[i] -= errors[s] * solved[s][i];
+                    path[i] -= errors[s] * _solved[s][i];
                 }
             }
-
-            return (free, errors);
         }
 
         private static double Dot(double[] a, double[] b)

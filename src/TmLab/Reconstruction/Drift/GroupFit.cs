@@ -35,6 +35,9 @@ internal sealed class GroupFit
     /// <summary>g_s, laser power relative to the mean over the measurement.</summary>
     public double[] Gain { get; private set; }
 
+    /// <summary>Mean variance of the gains; NaN before the first step.</summary>
+    public double GainVariance { get; private set; } = double.NaN;
+
     /// <summary>Inverse covariance of the phases, gains and fields marginalised, 1/rad²; the common constant is not determined.</summary>
     public double[,] Information { get; private set; }
 
@@ -118,6 +121,8 @@ internal sealed class GroupFit
             }
         }
 
+        double[,] covariance = SmallSymmetric.Inverse(normal);
+        GainVariance = Enumerable.Range(Steps, Steps).Average(s => covariance[s, s]);
         double[] step = SmallSymmetric.Solve(normal, right);
         PhaseRad = [.. PhaseRad.Select((t, s) => t + step[s])];
         Gain = [.. Gain.Select((g, s) => g + step[Steps + s])];

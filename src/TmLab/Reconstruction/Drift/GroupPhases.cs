@@ -13,6 +13,7 @@ internal sealed class GroupPhases
 
     private readonly PixelSample _sample;
     private readonly ReconstructionSettings _settings;
+    private double[] _residual = [];
 
     private GroupPhases(ImmutableArray<StepGroup> groups, ImmutableArray<double> commandedRad, PixelSample sample, ReconstructionSettings settings)
     {
@@ -23,6 +24,15 @@ internal sealed class GroupPhases
 
     /// <summary>The groups, modes and trackers, in the order of recording.</summary>
     public ImmutableArray<StepGroup> Groups { get; }
+
+    /// <summary>Each sample pixel's variance of a count about the model, counts²; infinite for pixels that did not serve.</summary>
+    public double[] PixelVariance { get; private set; } = [];
+
+    /// <summary>
+    /// Each group's squared residual over what the pixels' variance lets expect: 1 for a group like the others, NaN for one that
+    /// could not be fitted.
+    /// </summary>
+    public double[] Misfit { get; private set; } = [];
 
     /// <summary>One fit a group.</summary>
     public GroupFit[] Fits { get; }
@@ -61,6 +71,32 @@ internal sealed class GroupPhases
         return (new Complex(re, im), energyA, energyB, pixels);
     }
 
+    /// <summary>
+    /// |⟨D_a, D_b⟩|²/(⟨D_a,D_a⟩⟨D_b,D_b⟩) over the sample as measured, and with the noise' share taken off the energies.
+    /// </summary>
+    public (double Measured, double WithoutNoise) Similarity(int a, int b)
+    {
+        (Complex overlap, double energyA, double energyB, _) = Overlap(a, b);
+        double left = Math.Max(energyA - NoiseEnergy(a), 0) * Math.Max(energyB - NoiseEnergy(b), 0);
+        double squared = (overlap.Real * overlap.Real) + (overlap.Imaginary * overlap.Imaginary);
+        return (squared / (energyA * energyB), a == b ? 1 : squared / left);
+    }
+
+    /// <summary>A group's squared residual in units of its fringes' energy.</summary>
+    public double ResidualShare(int group) => _residual[group] / (2 * Fits[group].PhaseRad.Length * Overlap(group, group).EnergyA);
+
+    private double NoiseEnergy(int group)
+    {
+        double gain = StepFit.TryCreate(Fits[group].PhaseRad)?.FieldVariance ?? double.NaN, sum = 0;
+        ReadOnlySpan<double> field = Fits[group].FieldReal;
+        for (int p = 0; p < field.Length; p++)
+        {
+            sum += double.IsNaN(field[p]) || !double.IsFinite(PixelVariance[p]) ? 0 : gain * PixelVariance[p];
+        }
+
+        return sum;
+    }
+
     private bool Run(CancellationToken cancel)
     {
         if (Fits.Length < CoherenceModel.FewestGroups)
@@ -82,6 +118,8 @@ internal sealed class GroupPhases
             (variance, largestStep) = ImproveAll(model, cancel);
         }
 
+        PixelVariance = variance!;
+
         return true;
     }
 
@@ -95,7 +133,26 @@ internal sealed class GroupPhases
             residuals[k] = new double[_sample.Count];
             steps[k] = Fits[k].Improve(model, _settings.PowerSpread, residuals[k]);
         }, cancel);
-        return (Variance(residuals), steps.Max());
+        double[] variance = Variance(residuals);
+        _residual = [.. residuals.Select(r => r.Sum())];
+        Misfit = [.. residuals.Select((r, k) => MisfitOf(r, variance, Fits[k].PhaseRad.Length))];
+        return (variance, steps.Max());
+    }
+
+    private static double MisfitOf(double[] residual, double[] variance, int steps)
+    {
+        double sum = 0;
+        int freedom = (-2 * steps) + 1;
+        for (int p = 0; p < residual.Length; p++)
+        {
+            if (residual[p] > 0 && double.IsFinite(variance[p]))
+            {
+                sum += residual[p] / variance[p];
+                freedom += steps - 2;
+            }
+        }
+
+        return freedom > 0 ? sum / freedom : double.NaN;
     }
 
     // Two of a group's S numbers a pixel are taken by its field.

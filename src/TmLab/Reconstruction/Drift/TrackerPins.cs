@@ -15,8 +15,8 @@ internal readonly record struct TrackerPin(int Group, double TimeS, double Offse
 /// <summary>Compares all showings of the pattern that is shown most often: trackers, and that pattern as a mode.</summary>
 internal static class TrackerPins
 {
-    // Neighbouring pixels of a speckle grain carry the same noise of decorrelation: count one pixel in four as independent.
-    private const double IndependentShare = 0.25;
+    /// <summary>Neighbouring pixels of a speckle grain carry the same noise of decorrelation: one pixel in four counts as independent.</summary>
+    public const double IndependentShare = 0.25;
 
     /// <summary>The pins in order of time; empty with fewer than two showings of any tracker's pattern.</summary>
     /// <param name="schedule">The frames.</param>
@@ -62,7 +62,7 @@ internal static class TrackerPins
     }
 
     /// <summary>Mean drift rate inside the groups from one group to another, rad/s.</summary>
-    private static double ObservedRate(Schedule schedule, GroupPhases phases, ImmutableArray<double> commandedRad, int from, int to)
+    public static double ObservedRate(Schedule schedule, GroupPhases phases, ImmutableArray<double> commandedRad, int from, int to)
     {
         double moved = 0, time = 0;
         for (int k = Math.Min(from, to); k <= Math.Max(from, to); k++)

@@ -100,7 +100,7 @@ internal sealed record PlanPartsSection(
     double DriftVarianceRad2,
     double SaturatedShare)
 {
-    public static PlanPartsSection From(ErrorBudget b) => new(
+    public static PlanPartsSection From(PlannedBudget b) => new(
         b.NoiseFidelity, b.DriftFidelity, b.DecorrelationFidelity, b.PanelEfficiency, b.ShotNoise, b.ReadNoise, b.CountRounding,
         b.DriftVarianceRad2, b.SaturatedShare);
 

@@ -41,10 +41,10 @@ internal sealed class BudgetModel
     public BudgetModel With(PlanSettings settings) => new(settings, this);
 
     /// <summary>The budget of a schedule of these settings.</summary>
-    public ErrorBudget Of(Schedule schedule)
+    public PlannedBudget Of(Schedule schedule)
     {
         int[] showings = Showings(schedule);
-        return new ErrorBudget(
+        return new PlannedBudget(
             Noise(showings, k => _settings.ReferenceElectrons + Signal(k)),
             Noise(showings, _ => Squared(_settings.Camera.ReadNoiseElectrons)),
             Noise(showings, _ => Squared(_settings.Camera.ElectronsPerCount) / 12),

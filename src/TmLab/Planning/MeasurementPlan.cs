@@ -17,7 +17,7 @@ public sealed record MeasurementPlan(
     MeasurementManifest Manifest,
     Schedule Schedule,
     TrackerSpacing Spacing,
-    ErrorBudget Budget,
+    PlannedBudget Budget,
     ImmutableArray<PlanVariation> Variations,
     ImmutableArray<string> Warnings)
 {
@@ -56,7 +56,7 @@ public sealed record MeasurementPlan(
         var model = new BudgetModel(settings);
         TrackerSpacing spacing = TrackerSpacing.Choose(settings, model);
         Schedule schedule = settings.BuildSchedule(spacing.EveryModes);
-        ErrorBudget budget = model.Of(schedule);
+        PlannedBudget budget = model.Of(schedule);
         return new MeasurementPlan(
             settings,
             ManifestOf(settings),
@@ -86,7 +86,7 @@ public sealed record MeasurementPlan(
         null,
         null);
 
-    private static IEnumerable<string> WarningsOf(PlanSettings settings, TrackerSpacing spacing, ErrorBudget budget)
+    private static IEnumerable<string> WarningsOf(PlanSettings settings, TrackerSpacing spacing, PlannedBudget budget)
     {
         if (spacing.IsAmbiguous)
         {

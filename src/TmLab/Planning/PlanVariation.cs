@@ -14,13 +14,13 @@ public sealed record PlanVariation(
     string Change, double Fidelity, double FidelityChange, int FrameCount, double DurationS, double SaturatedShare)
 {
     /// <summary>Every variation that is possible for the settings.</summary>
-    internal static ImmutableArray<PlanVariation> All(PlanSettings settings, int trackerEvery, BudgetModel model, ErrorBudget budget) =>
+    internal static ImmutableArray<PlanVariation> All(PlanSettings settings, int trackerEvery, BudgetModel model, PlannedBudget budget) =>
         [.. Changes(settings, trackerEvery).Select(c => Make(c, model, budget))];
 
-    private static PlanVariation Make((string Words, PlanSettings Settings, int Every) change, BudgetModel model, ErrorBudget budget)
+    private static PlanVariation Make((string Words, PlanSettings Settings, int Every) change, BudgetModel model, PlannedBudget budget)
     {
         Schedule schedule = change.Settings.BuildSchedule(change.Every);
-        ErrorBudget changed = model.With(change.Settings).Of(schedule);
+        PlannedBudget changed = model.With(change.Settings).Of(schedule);
         return new PlanVariation(
             change.Words, changed.Fidelity, changed.Fidelity - budget.Fidelity, schedule.Frames.Length,
             schedule.Frames.Length / change.Settings.FrameRateHz, changed.SaturatedShare);

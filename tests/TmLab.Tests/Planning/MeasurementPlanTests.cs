@@ -44,7 +44,7 @@ public sealed class MeasurementPlanTests
     [Fact]
     public void Predicted_fidelities_lie_between_nought_and_one_and_the_parts_multiply() => s_settings.Sample(settings =>
     {
-        ErrorBudget budget = MeasurementPlan.Make(settings).Budget;
+        PlannedBudget budget = MeasurementPlan.Make(settings).Budget;
         double product = budget.NoiseFidelity * budget.DriftFidelity * budget.DecorrelationFidelity * budget.PanelEfficiency;
         return budget.Fidelity is > 0 and <= 1 && Math.Abs(product - budget.Fidelity) < 1e-12 && budget.SaturatedShare is >= 0 and <= 1;
     }, iter: Plans);
@@ -69,7 +69,7 @@ public sealed class MeasurementPlanTests
             Camera = new PlannedCamera(new ImageSize(8, 8), 16, 1e3, 1.6, 1e9, 0),
             TrackerEveryModes = 0,
         };
-        ErrorBudget budget = MeasurementPlan.Make(settings).Budget;
+        PlannedBudget budget = MeasurementPlan.Make(settings).Budget;
         Assert.Equal(1 / (4 * 20.0), budget.ShotNoise, 1e-4 / 80);
     }
 
@@ -78,7 +78,7 @@ public sealed class MeasurementPlanTests
     public void Read_noise_and_rounding_enter_as_the_camera_standard_says()
     {
         var settings = new PlanSettings { TrackerEveryModes = 0, SignalElectrons = 100, ReferenceElectrons = 400 };
-        ErrorBudget budget = MeasurementPlan.Make(settings).Budget;
+        PlannedBudget budget = MeasurementPlan.Make(settings).Budget;
         Assert.Equal(1.6 * 1.6 / (4 * 400.0 * 100), budget.ReadNoise, 1e-12);
         Assert.Equal(7.5 * 7.5 / 12 / (4 * 400.0 * 100), budget.CountRounding, 1e-12);
         Assert.Equal(500.0 / (4 * 400 * 100), budget.ShotNoise, 1e-12);

@@ -1,6 +1,7 @@
 using System.Collections.Immutable;
 using TmLab.Matrix;
 using TmLab.Measurement;
+using TmLab.Planning;
 using TmLab.Simulation;
 using Xunit;
 

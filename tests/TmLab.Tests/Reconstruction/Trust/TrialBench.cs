@@ -3,6 +3,7 @@ using System.Numerics;
 using TmLab.Matrix;
 using TmLab.Measurement;
 using TmLab.Numerics.Matrices;
+using TmLab.Planning;
 using TmLab.Quantities;
 using TmLab.Reconstruction;
 using TmLab.Simulation;

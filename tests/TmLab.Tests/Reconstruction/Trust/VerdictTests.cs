@@ -3,6 +3,7 @@ using System.Globalization;
 using System.Text;
 using TmLab.Matrix;
 using TmLab.Measurement;
+using TmLab.Planning;
 using TmLab.Simulation;
 using TmLab.TestKit;
 using Xunit;

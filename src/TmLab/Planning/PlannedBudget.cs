@@ -14,7 +14,7 @@ namespace TmLab.Planning;
 /// <param name="SaturatedShare">Share of pixels that saturate in a frame of full signal.</param>
 /// <param name="TrackerGapRad">Four standard deviations of the phase from one tracker to the next, radians; of the whole measurement without trackers.</param>
 /// <param name="ModeCount">Number of input modes.</param>
-public sealed record ErrorBudget(
+public sealed record PlannedBudget(
     double ShotNoise,
     double ReadNoise,
     double CountRounding,
